@@ -1,0 +1,62 @@
+// Runs a designed instrument: every string a loop, every bridge a junction, exact at every sample.
+#pragma once
+
+#include "dsp/design/InstrumentDesign.h"
+
+#include <memory>
+
+namespace hitchpin::engine {
+
+/// One release of a string that a plectrum or a finger held aside.
+struct Pluck {
+    double force = 1.0;       ///< N, held just before the release
+    double pointRatio = 0.2;  ///< of the speaking length, from the bridge, 0…1
+    double width = 0.0;       ///< m of string that the plectrum or finger covers
+    double angle = 1.5707963267948966; ///< rad from across towards into
+};
+
+/// Where the sound is taken: the forces with which the strings pull at their bridges.
+struct Listening {
+    double angle = 1.5707963267948966; ///< rad from across towards into: which direction of the force is heard
+    double spread = 0.0;      ///< 0: both sides alike; 1: the ends of a bridge lie fully left and right
+};
+
+/// Constructing allocates; afterwards every call is real-time safe: no lock, no heap, no exception, no log.
+/// One thread at a time. The result does not depend on how a span of time is cut into blocks, to the last bit.
+class Engine {
+public:
+    explicit Engine(std::shared_ptr<const design::InstrumentDesign>);
+    ~Engine();
+    Engine(const Engine&) = delete;            // holds megabytes of lines; hand over by pointer
+    Engine& operator=(const Engine&) = delete;
+
+    /// At rest, as if new. Keeps design and listening.
+    void reset() noexcept;
+
+    void pluck(int string, const Pluck&) noexcept;
+    /// The string speaks from fret `stop` (0 = open) from now on. What rang before is put out at the finger.
+    void stopAt(int string, int stop) noexcept;
+    /// The damper takes energy so that a partial's T60 is at most `t60` seconds; 0 lifts it.
+    void damp(int string, double t60) noexcept;
+    /// Puts everything out within some milliseconds, without a click.
+    void silence() noexcept;
+    void listen(const Listening&) noexcept;
+
+    /// Adds nothing: writes `frames` samples of bridge force in newtons. `right` may be null.
+    void process(double* left, double* right, int frames) noexcept;
+
+    /// Joules on all strings: never grows but by what a pluck puts in.
+    double energy() const noexcept;
+    /// True when nothing would sound any more.
+    bool silent() const noexcept;
+    /// Strings that are being computed now.
+    int ringingStrings() const noexcept;
+
+    const design::InstrumentDesign& design() const noexcept;
+
+private:
+    struct Running;
+    std::unique_ptr<Running> running_;
+};
+
+} // namespace hitchpin::engine

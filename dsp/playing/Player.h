@@ -1,0 +1,95 @@
+// From notes and pedals to strings: which course a key takes, how hard the hand plucks, when dampers fall.
+// The one place for console and plug-in.
+#pragma once
+
+#include "dsp/engine/Engine.h"
+
+#include <array>
+#include <memory>
+#include <span>
+#include <vector>
+
+namespace hitchpin::playing {
+
+/// Peak of the sound in newtons of bridge force that is written as digital full scale.
+inline constexpr double fullScaleNewtons = 20.0;
+
+enum class PluckedWith { finger, plectrum };
+
+/// How keys take courses. asBuilt: the nearest course at or below within its frets, notes together shared out so
+/// that they take different courses. everyKeyStrung: the description already holds a course for each key.
+enum class KeyTaking { asBuilt, everyKeyStrung };
+
+struct VelocityPoint {
+    double velocity; ///< MIDI velocity 1…127
+    double factor;   ///< times the force
+};
+
+/// How this instrument is played by default.
+struct Rules {
+    PluckedWith with = PluckedWith::finger;
+    double width = 0.003;   ///< m
+    double force = 2.0;     ///< N at factor 1
+    double angle = 0.7853981633974483; ///< rad from across towards into
+    std::vector<VelocityPoint> velocity; ///< by rising velocity, linear between; empty: (v/64)
+    KeyTaking keys = KeyTaking::asBuilt;
+    bool channelPerCourse = false; ///< MIDI channel c plays course c−1 alone
+};
+
+/// What a player changes while playing: neutral factors and offsets on the rules.
+struct Hand {
+    double pluckPointOffset = 0.0; ///< added to the ratio; the result is kept within 0.02…0.98
+    double widthFactor = 1.0;
+    double angleOffset = 0.0;      ///< rad
+    double forceFactor = 1.0;
+    double dampingFactor = 1.0;    ///< times the damper's hold: 2 damps twice as fast
+};
+
+struct Event {
+    enum class Kind { noteOn, noteOff, sustain, allNotesOff, allSoundOff };
+    int frame = 0;      ///< offset in the block
+    Kind kind = Kind::noteOn;
+    int channel = 1;    ///< 1…16
+    int key = 60;
+    double value = 0.0; ///< velocity 0…127, or pedal 0…127
+};
+
+/// What a key would do, for keyboards on screen.
+enum class KeyState { silent, open, stopped };
+
+/// Real-time safe after construction, as the engine. One thread at a time.
+class Player {
+public:
+    Player(std::shared_ptr<const design::InstrumentDesign>, Rules);
+
+    void reset() noexcept;
+    void setHand(const Hand&) noexcept;
+    void listen(const engine::Listening&) noexcept;
+
+    /// `events` by rising frame. Writes newtons of bridge force. `right` may be null.
+    void process(std::span<const Event> events, double* left, double* right, int frames) noexcept;
+
+    bool silent() const noexcept;
+    int ringingStrings() const noexcept;
+    KeyState keyState(int key) const noexcept;
+    const engine::Engine& engine() const noexcept;
+
+private:
+    void handle(const Event&) noexcept;
+
+    engine::Engine engine_;
+    Rules rules_;
+    Hand hand_;
+    struct CourseState {
+        int key = -1;          ///< the key that last took it, −1 for none
+        int channel = 0;
+        bool held = false;     ///< key down
+        bool sustained = false;
+        unsigned long age = 0; ///< order of taking
+    };
+    std::vector<CourseState> courses_;
+    std::array<bool, 16> pedal_{};
+    unsigned long clock_ = 0;
+};
+
+} // namespace hitchpin::playing
