@@ -6,7 +6,7 @@ cd "${1:-$(dirname "$0")/..}"
 
 # folder: what its files may include, as a pattern over the included path
 declare -A allowed=(
-    [dsp/base]='dsp/base/'
+    [dsp/base]='dsp/base/|Eigen/'
     [dsp/string]='dsp/(base|string)/|Eigen/'
     [dsp/tuning]='dsp/(base|tuning)/'
     [dsp/design]='dsp/(base|string|design)/|Eigen/'
@@ -24,6 +24,7 @@ declare -A allowed=(
 broken=0
 files=0
 for folder in "${!allowed[@]}"; do
+    [ -d "$folder" ] || continue
     while IFS= read -r file; do
         files=$((files + 1))
         while IFS= read -r line; do
