@@ -1,0 +1,231 @@
+#include "dsp/design/LoopModel.h"
+
+#include "dsp/design/Sections.h"
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+#include <numbers>
+
+namespace hitchpin::design {
+
+namespace {
+
+using Complex = std::complex<double>;
+constexpr double pi = std::numbers::pi;
+
+/// Products written out: the library's own check for infinities at every turn, which costs half the design time.
+Complex times(Complex a, Complex b) {
+    return {a.real() * b.real() - a.imag() * b.imag(), a.real() * b.imag() + a.imag() * b.real()};
+}
+Complex inverse(Complex a) {
+    const double scale = 1.0 / (a.real() * a.real() + a.imag() * a.imag());
+    return {a.real() * scale, -a.imag() * scale};
+}
+/// ln of a quotient whose parts both lie in the right half plane.
+Complex logQuotient(Complex upper, Complex lower) {
+    const Complex product = times(upper, std::conj(lower));
+    return {0.5 * std::log(std::norm(upper) / std::norm(lower)), std::atan2(product.imag(), product.real())};
+}
+
+struct ShelfParts {
+    Complex upper;
+    Complex lower;
+};
+ShelfParts partsOf(const ShelfModel& shelf, double gamma, Complex s) {
+    if (shelf.loses == ShelfModel::Loses::high)
+        return {shelf.corner + gamma * s, shelf.corner + s};
+    return {gamma * shelf.corner + s, shelf.corner + s};
+}
+
+} // namespace
+
+std::size_t constantCount(const LoopModel& model) { return firstLossConstant(model) + 1 + 2 * model.shelves.size(); }
+
+std::size_t firstLossConstant(const LoopModel& model) { return 1 + 2 * model.sections.size(); }
+
+std::vector<double> constantsOf(const LoopModel& model) {
+    std::vector<double> constants{model.thiranDelay > 0.0 ? model.thiranDelay : model.straightDelay};
+    for (const AllpassSection& section : model.sections) {
+        constants.push_back(std::log(section.c0));
+        constants.push_back(std::log(section.c1));
+    }
+    constants.push_back(std::log(model.loss));
+    for (const ShelfModel& shelf : model.shelves) {
+        constants.push_back(std::log(shelf.corner));
+        constants.push_back(std::log(shelf.depth));
+    }
+    return constants;
+}
+
+bool setConstants(LoopModel& model, std::span<const double> constants, std::size_t first) {
+    constexpr double bound = 45.0; // of logarithms: far past any use, short of overflow
+    const std::size_t lossAt = firstLossConstant(model);
+    for (std::size_t i = 0; i < constants.size(); ++i) {
+        const std::size_t which = first + i;
+        const double value = constants[i];
+        if (which > 0 && !(std::abs(value) < bound))
+            return false;
+        if (which == 0) {
+            if (!(value > 0.0))
+                return false;
+            (model.thiranDelay > 0.0 ? model.thiranDelay : model.straightDelay) = value;
+        } else if (which < lossAt) {
+            AllpassSection& section = model.sections[(which - 1) / 2];
+            ((which - 1) % 2 == 0 ? section.c0 : section.c1) = std::exp(value);
+        } else if (which == lossAt) {
+            model.loss = std::exp(value);
+        } else {
+            ShelfModel& shelf = model.shelves[(which - lossAt - 1) / 2];
+            ((which - lossAt - 1) % 2 == 0 ? shelf.corner : shelf.depth) = std::exp(value);
+        }
+    }
+    return true;
+}
+
+Complex logLoop(const LoopModel& model, Complex p, Complex s, std::span<Complex> byConstant) {
+    const bool derivatives = !byConstant.empty();
+    Complex sum = -model.straightDelay * p;
+    if (derivatives)
+        byConstant[0] = -p;
+    if (model.thiranDelay > 0.0) {
+        // Thiran's (a + z⁻¹)/(1 + a·z⁻¹) with a = (1−d)/(1+d) is (1 − d·s)/(1 + d·s).
+        const Complex upper = 1.0 - model.thiranDelay * s, lower = 1.0 + model.thiranDelay * s;
+        // Near half the rate `upper` leaves the right half plane: its own angle, not that of the quotient.
+        sum += Complex(0.5 * std::log(std::norm(upper) / std::norm(lower)),
+                       std::atan2(upper.imag(), upper.real()) - std::atan2(lower.imag(), lower.real()));
+        if (derivatives)
+            byConstant[0] = -times(s, inverse(upper) + inverse(lower));
+    }
+
+    const Complex s2 = times(s, s);
+    Complex magnitude = 1.0; // product of the sections; only its modulus is used, the angles are summed
+    for (std::size_t k = 0; k < model.sections.size(); ++k) {
+        const AllpassSection& section = model.sections[k];
+        const Complex upper = s2 - section.c1 * s + section.c0, lower = s2 + section.c1 * s + section.c0;
+        const Complex quotient = times(upper, inverse(lower));
+        double angle = std::atan2(quotient.imag(), quotient.real());
+        if (angle > 0.0)
+            angle -= 2.0 * pi; // from 0 at rest to −2π at half the rate
+        sum += Complex(0.0, angle);
+        magnitude = times(magnitude, quotient);
+        if (derivatives) {
+            // d ln A/d ln c0 = c0·(1/N − 1/D) = 2c0c1·s/(ND);  d ln A/d ln c1 = −c1·s·(1/N + 1/D)
+            const Complex common = (2.0 * section.c1) * times(s, inverse(times(upper, lower)));
+            byConstant[1 + 2 * k] = section.c0 * common;
+            byConstant[2 + 2 * k] = -times(common, s2 + section.c0);
+        }
+    }
+    sum += 0.5 * std::log(std::norm(magnitude));
+
+    const std::size_t lossAt = firstLossConstant(model);
+    sum -= model.loss;
+    if (derivatives)
+        byConstant[lossAt] = -model.loss;
+    for (std::size_t i = 0; i < model.shelves.size(); ++i) {
+        const ShelfModel& shelf = model.shelves[i];
+        const double gamma = std::exp(-shelf.depth);
+        const auto [upper, lower] = partsOf(shelf, gamma, s);
+        sum += logQuotient(upper, lower);
+        if (derivatives) {
+            const Complex overUpper = inverse(upper), overLower = inverse(lower);
+            const bool high = shelf.loses == ShelfModel::Loses::high;
+            byConstant[lossAt + 1 + 2 * i] = shelf.corner * ((high ? 1.0 : gamma) * overUpper - overLower);
+            byConstant[lossAt + 2 + 2 * i] =
+                (-gamma * shelf.depth) * times(high ? s : Complex(shelf.corner), overUpper);
+        }
+    }
+    return sum;
+}
+
+Complex logLoopSlope(const LoopModel& model, Complex s) {
+    const Complex s2 = times(s, s);
+    Complex byS = 0.0;
+    if (model.thiranDelay > 0.0) {
+        const double d = model.thiranDelay;
+        byS -= d * (inverse(1.0 - d * s) + inverse(1.0 + d * s));
+    }
+    for (const auto& [c0, c1] : model.sections)
+        byS += (2.0 * c1) * times(s2 - c0, inverse(times(s2 - c1 * s + c0, s2 + c1 * s + c0)));
+    for (const ShelfModel& shelf : model.shelves) {
+        const double gamma = std::exp(-shelf.depth);
+        const auto [upper, lower] = partsOf(shelf, gamma, s);
+        byS += (shelf.loses == ShelfModel::Loses::high ? gamma : 1.0) * inverse(upper) - inverse(lower);
+    }
+    return -model.straightDelay + times(byS, 0.5 * (1.0 - s2)); // ds/dp = (1−s²)/2
+}
+
+Complex loopPole(const LoopModel& model, double turns, Complex start) {
+    Complex p = start;
+    for (int iteration = 0; iteration < 40; ++iteration) {
+        const Complex s = std::tanh(0.5 * p);
+        const Complex miss = logLoop(model, p, s, {}) + Complex(0.0, 2.0 * pi * turns);
+        Complex step = -times(miss, inverse(logLoopSlope(model, s)));
+        // A step longer than a tenth of a partial may jump to the next one.
+        const double longest = 0.1 * p.imag() / std::max(1.0, turns) + 1e-6;
+        const double length = std::abs(step);
+        if (!(length < 1e3))
+            break;
+        if (length > longest)
+            step *= longest / length;
+        p += step;
+        if (!(p.imag() > 0.0 && p.imag() < pi))
+            break;
+        if (length < 1e-14 + 1e-13 * std::abs(p))
+            return p;
+    }
+    const double none = std::numeric_limits<double>::quiet_NaN();
+    return {none, none};
+}
+
+LoopDesign designOf(const LoopModel& model) {
+    LoopDesign design;
+    design.delay = static_cast<int>(std::lround(model.straightDelay));
+    design.thiran = thiranCoefficient(model.thiranDelay);
+    design.gain = std::exp(-model.loss);
+    design.sections = model.sections;
+    for (const ShelfModel& shelf : model.shelves) {
+        const double w = shelf.corner, gamma = std::exp(-shelf.depth), a1 = (w - 1.0) / (w + 1.0);
+        if (shelf.loses == ShelfModel::Loses::high)
+            design.shelves.push_back({(w + gamma) / (w + 1.0), (w - gamma) / (w + 1.0), a1});
+        else
+            design.shelves.push_back({(gamma * w + 1.0) / (w + 1.0), (gamma * w - 1.0) / (w + 1.0), a1});
+    }
+    return design;
+}
+
+LoopModel modelOf(const LoopDesign& design) {
+    LoopModel model;
+    model.straightDelay = design.delay;
+    model.thiranDelay = thiranDelay(design.thiran);
+    model.loss = -std::log(design.gain);
+    model.sections = design.sections;
+    for (const LossShelf& shelf : design.shelves) {
+        ShelfModel back;
+        back.corner = (1.0 + shelf.a1) / (1.0 - shelf.a1);
+        const double atRest = (shelf.b0 + shelf.b1) / (1.0 + shelf.a1);
+        const double atHalfRate = (shelf.b0 - shelf.b1) / (1.0 - shelf.a1);
+        back.loses = atHalfRate <= atRest ? ShelfModel::Loses::high : ShelfModel::Loses::low;
+        back.depth = std::max(1e-15, -std::log(std::min(atRest, atHalfRate)));
+        model.shelves.push_back(back);
+    }
+    return model;
+}
+
+double peakGain(const LoopDesign& design) {
+    constexpr int points = 1024;
+    const double lowest = 1e-4; // of tan(ω/2)
+    double peak = 0.0;
+    for (int i = 0; i <= points + 1; ++i) {
+        // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the rate.
+        const double x = lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
+        const Complex back = i == 0 ? Complex(1.0) : i > points ? Complex(-1.0) : Complex(1.0, -x) / Complex(1.0, x);
+        double squared = design.gain * design.gain;
+        for (const LossShelf& shelf : design.shelves)
+            squared *= std::norm(shelf.b0 + shelf.b1 * back) / std::norm(1.0 + shelf.a1 * back);
+        peak = std::max(peak, std::sqrt(squared));
+    }
+    return peak;
+}
+
+} // namespace hitchpin::design

@@ -1,0 +1,58 @@
+// A loop as a formula: ln L(e^p) anywhere in the complex plane, with its derivatives by p and by every constant.
+#pragma once
+
+#include "dsp/design/LoopDesign.h"
+
+#include <complex>
+#include <span>
+#include <vector>
+
+namespace hitchpin::design {
+
+/// s = (1−z⁻¹)/(1+z⁻¹), w the corner tan(ω/2), γ = e^(−depth) < 1. High: (w + γs)/(w + s) loses above the corner;
+/// low: (γw + s)/(w + s) loses below it. |H| ≤ 1 by construction.
+struct ShelfModel {
+    enum class Loses { high, low } loses = Loses::high;
+    double corner = 1.0;
+    double depth = 0.1; ///< nepers
+};
+
+struct LoopModel {
+    double straightDelay = 1.0; ///< samples of pure delay, also fractional while fitting
+    double thiranDelay = 0.0;   ///< samples at low frequencies; 0: no Thiran section
+    double loss = 0.0;          ///< nepers once round at every frequency: gain = e^(−loss)
+    std::vector<AllpassSection> sections;
+    std::vector<ShelfModel> shelves;
+
+    double delay() const noexcept { return straightDelay + thiranDelay; }
+};
+
+/// The constants that a fit moves, in this order. All but the delay as logarithms, which keeps every section
+/// stable and every shelf passive:
+/// delay (Thiran's where there is one, else the straight one) · ln c0, ln c1 of each section · ln loss ·
+/// ln corner, ln depth of each shelf.
+std::size_t constantCount(const LoopModel&);
+std::size_t firstLossConstant(const LoopModel&);
+std::vector<double> constantsOf(const LoopModel&);
+/// False, and the model left half changed, where the delay is negative or a constant is out of all bounds.
+bool setConstants(LoopModel&, std::span<const double>, std::size_t first = 0);
+
+/// ln L(e^p) without the turn, its imaginary part followed continuously from 0 at p = 0.
+/// `s` = tanh(p/2). `byConstant` may be empty; else it receives d ln L/d constant for each of constantsOf().
+std::complex<double> logLoop(const LoopModel&, std::complex<double> p, std::complex<double> s,
+                             std::span<std::complex<double>> byConstant);
+
+/// d ln L(e^p)/dp.
+std::complex<double> logLoopSlope(const LoopModel&, std::complex<double> s);
+
+/// The pole of the loop near `start`: ln L(e^p) + j2π·turns = 0, by Newton. NaN where it does not converge.
+std::complex<double> loopPole(const LoopModel&, double turns, std::complex<double> start);
+
+/// From formula to filters and back. The model must have a Thiran section and a whole straight delay.
+LoopDesign designOf(const LoopModel&);
+LoopModel modelOf(const LoopDesign&);
+
+/// Largest |L| on the unit circle, over a grid that is dense at low frequencies.
+double peakGain(const LoopDesign&);
+
+} // namespace hitchpin::design

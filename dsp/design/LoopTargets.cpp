@@ -1,0 +1,98 @@
+#include "dsp/design/LoopTargets.h"
+
+#include <algorithm>
+#include <cmath>
+#include <numbers>
+
+namespace hitchpin::design {
+
+namespace {
+
+constexpr double pi = std::numbers::pi;
+
+/// Share of the sample rate up to which partials are looked after at all.
+constexpr double usableShareOfRate = 0.45;
+/// A loss this small (nepers a round) rings for days; it stands in for none, which could not be fitted in ratio.
+constexpr double leastLoss = 1e-9;
+
+struct Ambition {
+    double reachHz;       ///< partials are followed up to here…
+    int mostPartials;     ///< …or to this one
+    int leastPartials;    ///< but the first few also above `reachHz`
+    int mostSections;
+    double margin;        ///< sections beyond X(n)
+};
+
+constexpr Ambition live{10000.0, 120, 4, 12, 1.3};
+constexpr Ambition reference{16000.0, 128, 6, 60, 4.0};
+
+/// With fewer sections to spare than this the fit gets coarse (some cents).
+constexpr double leastMargin = 1.2;
+
+} // namespace
+
+LoopTarget targetAt(const string::Partials& partials, double sampleRate, double number) {
+    LoopTarget target{};
+    target.number = number;
+    target.turns = partials.ends().oneFree() ? number - 0.5 : number;
+    target.frequency = partials.frequency(number);
+    target.decayRate = partials.decayRate(number);
+    const double period = 1.0 / partials.slope(number);
+    target.decayRate = std::max(target.decayRate, leastLoss / period);
+    target.p = {-target.decayRate / sampleRate, 2.0 * pi * target.frequency / sampleRate};
+    target.s = std::tanh(0.5 * target.p);
+    target.groupDelay = sampleRate * period;
+    target.loss = target.decayRate * period;
+    return target;
+}
+
+double sectionsNeeded(const string::Partials& partials, double number) {
+    const double turns = partials.ends().oneFree() ? number - 0.5 : number;
+    return std::max(0.0, turns - partials.frequency(number) / partials.slope(number));
+}
+
+LoopPlan planLoop(const string::Partials& partials, const LoopSettings& settings) {
+    const Ambition& aim = settings.quality == Quality::live ? live : reference;
+    const double usable = usableShareOfRate * settings.sampleRate;
+
+    LoopPlan plan;
+    double needed = sectionsNeeded(partials, 1.0);
+    for (int n = 2; n <= aim.mostPartials; ++n) {
+        const double frequency = partials.frequency(n);
+        if (frequency > usable || (frequency > aim.reachHz && n > aim.leastPartials))
+            break;
+        const double more = std::max(needed, sectionsNeeded(partials, n));
+        if (more > aim.mostSections - leastMargin)
+            break;
+        plan.coveredPartial = n;
+        needed = more;
+    }
+    plan.sections = std::min(aim.mostSections, static_cast<int>(std::ceil(needed + aim.margin)));
+    // Two unknowns a section and the delay must not outnumber the targets at n = 1, 1.5, 2, …
+    plan.sections = std::min(plan.sections, plan.coveredPartial - 1);
+    return plan;
+}
+
+std::vector<LoopTarget> phaseTargets(const string::Partials& partials, double sampleRate, int coveredPartial) {
+    std::vector<LoopTarget> targets;
+    for (int half = 2; half <= 2 * coveredPartial; ++half)
+        targets.push_back(targetAt(partials, sampleRate, 0.5 * half));
+    return targets;
+}
+
+std::vector<LoopTarget> lossTargets(const string::Partials& partials, double sampleRate, int coveredPartial) {
+    std::vector<LoopTarget> targets;
+    const int step = 1 + coveredPartial / 40;
+    for (int n = 1; n <= coveredPartial; n += n < 12 ? 1 : step)
+        targets.push_back(targetAt(partials, sampleRate, n));
+    const double lastDelay = targets.back().groupDelay;
+    for (double n = coveredPartial * 1.15 + 1.0; partials.frequency(n) < usableShareOfRate * sampleRate; n *= 1.15) {
+        LoopTarget beyond = targetAt(partials, sampleRate, n);
+        beyond.groupDelay = std::max(beyond.groupDelay, lastDelay);
+        beyond.loss = beyond.decayRate * beyond.groupDelay / sampleRate;
+        targets.push_back(beyond);
+    }
+    return targets;
+}
+
+} // namespace hitchpin::design

@@ -1,0 +1,118 @@
+#include "dsp/design/LossFit.h"
+
+#include "dsp/base/LeastSquares.h"
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+namespace hitchpin::design {
+
+namespace {
+
+/// Good enough to stop adding shelves: root mean square error of the loss, per cent.
+constexpr double goodPercent = 0.05;
+
+struct LossPoint {
+    double x2; ///< tan²(ω/2)
+    double loss;
+    double weight;
+};
+
+/// −ln|H| of one shelf at x = tan(ω/2), and its derivatives by ln corner and ln depth.
+struct ShelfLoss {
+    double loss, byCorner, byDepth;
+};
+ShelfLoss shelfLoss(const ShelfModel& shelf, double x2) {
+    const double w2 = shelf.corner * shelf.corner, g2 = std::exp(-2.0 * shelf.depth);
+    if (shelf.loses == ShelfModel::Loses::high) {
+        const double upper = w2 + g2 * x2, lower = w2 + x2;
+        return {0.5 * std::log(lower / upper), w2 / lower - w2 / upper, shelf.depth * g2 * x2 / upper};
+    }
+    const double upper = g2 * w2 + x2, lower = w2 + x2;
+    return {0.5 * std::log(lower / upper), w2 / lower - g2 * w2 / upper, shelf.depth * g2 * w2 / upper};
+}
+
+double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterations) {
+    const std::size_t first = firstLossConstant(model), rows = points.size();
+    std::vector<double> all = constantsOf(model);
+    std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first), all.end());
+    const double cost = minimiseSquares(
+        [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
+            if (!setConstants(model, trial, first))
+                return false;
+            for (std::size_t i = 0; i < rows; ++i) {
+                const auto& [x2, loss, weight] = points[i];
+                const double scale = 100.0 * weight / loss;
+                double sum = model.loss;
+                if (!jacobian.empty())
+                    jacobian[i] = scale * model.loss;
+                for (std::size_t k = 0; k < model.shelves.size(); ++k) {
+                    const ShelfLoss part = shelfLoss(model.shelves[k], x2);
+                    sum += part.loss;
+                    if (!jacobian.empty()) {
+                        jacobian[(1 + 2 * k) * rows + i] = scale * part.byCorner;
+                        jacobian[(2 + 2 * k) * rows + i] = scale * part.byDepth;
+                    }
+                }
+                residuals[i] = scale * (sum - loss);
+            }
+            return true;
+        },
+        constants, rows, {.iterations = iterations, .largestStep = 1.5, .smallestImprovement = 1e-3});
+    setConstants(model, constants, first);
+    return cost;
+}
+
+} // namespace
+
+double lossWeight(const LoopTarget& target, int coveredPartial) {
+    if (target.number > coveredPartial)
+        return 0.2;
+    return target.frequency <= 6000.0 ? 1.0 : 0.5;
+}
+
+void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int coveredPartial, int shelfCount) {
+    std::vector<LossPoint> points;
+    double least = std::numeric_limits<double>::infinity(), most = 0.0;
+    for (const LoopTarget& target : targets) {
+        const double x = std::tan(0.5 * target.p.imag());
+        points.push_back({x * x, target.loss, lossWeight(target, coveredPartial)});
+        least = std::min(least, target.loss);
+        most = std::max(most, target.loss);
+    }
+    std::vector<LossPoint> few; // to judge candidates by
+    for (std::size_t i = 0; i < points.size(); i += i < 8 ? 1 : 1 + points.size() / 16)
+        few.push_back(points[i]);
+
+    model.loss = 0.9 * least;
+    model.shelves.clear();
+    const double good = goodPercent * goodPercent * static_cast<double>(points.size());
+    double cost = refine(model, points, 20);
+    const double lowest = std::sqrt(points.front().x2), highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
+    for (int shelf = 0; shelf < shelfCount && cost > good && 1 + 2 * (shelf + 1) <= static_cast<int>(points.size());
+         ++shelf) {
+        constexpr int corners = 8;
+        LoopModel best;
+        double bestCost = std::numeric_limits<double>::infinity();
+        for (int i = 0; i < corners; ++i) {
+            for (const auto loses : {ShelfModel::Loses::high, ShelfModel::Loses::low}) {
+                LoopModel candidate = model;
+                const double corner = lowest * std::pow(highest / lowest, (i + 0.5) / corners);
+                candidate.shelves.push_back({loses, corner, std::max(0.3 * (most - least), 0.05 * most)});
+                const double candidateCost = refine(candidate, few, 8);
+                if (candidateCost < bestCost) {
+                    bestCost = candidateCost;
+                    best = candidate;
+                }
+            }
+        }
+        const double refined = refine(best, points, 40);
+        if (!(refined < cost))
+            break;
+        cost = refined;
+        model = best;
+    }
+}
+
+} // namespace hitchpin::design

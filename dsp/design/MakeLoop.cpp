@@ -1,0 +1,278 @@
+#include "dsp/design/MakeLoop.h"
+
+#include "dsp/base/LeastSquares.h"
+#include "dsp/design/AllpassPlacement.h"
+#include "dsp/design/LoopModel.h"
+#include "dsp/design/LoopTargets.h"
+#include "dsp/design/LossFit.h"
+
+#include <algorithm>
+#include <cmath>
+#include <cstdio>
+#include <limits>
+#include <numbers>
+#include <optional>
+
+namespace hitchpin::design {
+
+namespace {
+
+using Complex = std::complex<double>;
+constexpr double pi = std::numbers::pi;
+constexpr double centsPerNeper = 1200.0 / std::numbers::ln2;
+
+/// Above this share of the rate the first partial leaves no whole sample of delay beside the filters.
+constexpr double highestFirstPartial = 0.4;
+/// One sample for the line and half a one for Thiran's section.
+constexpr double leastDelay = 1.5;
+constexpr int shelfCount = 3;
+/// A fit this good (root mean square, cents) needs no other start.
+constexpr double goodCents = 0.05;
+/// Losses off by more than this are fitted again together with the phase.
+constexpr double goodT60 = 0.03;
+/// In a fit of both, so many per cent of T60 weigh as much as a cent.
+constexpr double percentPerCent = 3.0;
+/// A warm start that ends worse than this asks for a design from the beginning.
+constexpr double warmCents = 0.8;
+/// The report goes at least this far, also where the fit does not.
+constexpr int leastReported = 64;
+
+enum class Fitted { phase, loss, both };
+
+/// Moves the model's constants towards the targets' poles. Phase in cents at `phase`, loss in per cent at `loss`,
+/// both at the damped poles. Returns the sum of squares.
+double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss,
+           int coveredPartial, Fitted what, int iterations) {
+    const std::size_t lossAt = firstLossConstant(model), count = constantCount(model);
+    const std::size_t first = what == Fitted::loss ? lossAt : 0;
+    const std::size_t end = what == Fitted::phase ? lossAt : count;
+    const std::size_t phaseRows = what == Fitted::loss ? 0 : phase.size();
+    const std::size_t lossRows = what == Fitted::phase ? 0 : loss.size();
+    const std::size_t rows = phaseRows + lossRows;
+    const std::vector<double> all = constantsOf(model);
+    std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first),
+                                  all.begin() + static_cast<std::ptrdiff_t>(end));
+    std::vector<Complex> derivatives(count);
+    const double lossScale = what == Fitted::both ? 100.0 / percentPerCent : 100.0;
+
+    const auto residualsAt = [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
+        if (!setConstants(model, trial, first) || model.delay() < leastDelay)
+            return false;
+        const std::span<Complex> wanted = jacobian.empty() ? std::span<Complex>{} : std::span<Complex>(derivatives);
+        for (std::size_t i = 0; i < rows; ++i) {
+            const bool isPhase = i < phaseRows;
+            const LoopTarget& target = isPhase ? phase[i] : loss[i - phaseRows];
+            const Complex log = logLoop(model, target.p, target.s, wanted);
+            if (isPhase) {
+                const double scale = centsPerNeper / (target.p.imag() * target.groupDelay);
+                residuals[i] = scale * (log.imag() + 2.0 * pi * target.turns);
+                for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
+                    jacobian[(j - first) * rows + i] = scale * derivatives[j].imag();
+            } else {
+                // Beyond the covered partials the straight part of the loop is longer or shorter than the
+                // string: there the loss alone is held, taken off the growth of e^(−pM) at the damped pole.
+                const double scale = lossScale * lossWeight(target, coveredPartial) / target.loss;
+                residuals[i] = scale * log.real();
+                for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
+                    jacobian[(j - first) * rows + i] = scale * derivatives[j].real();
+            }
+        }
+        return true;
+    };
+    const double cost = minimiseSquares(residualsAt, constants, rows,
+                                        {.iterations = iterations, .largestStep = 0.7, .smallestImprovement = 1e-3});
+    setConstants(model, constants, first);
+    return cost;
+}
+
+/// From one fractional delay to whole samples and Thiran's section with 0.5 ≤ d < 1.5.
+void splitDelay(LoopModel& model) {
+    const double whole = std::max(1.0, std::floor(model.delay() - 0.5));
+    model.thiranDelay = model.delay() - whole;
+    model.straightDelay = whole;
+}
+
+/// Sets the delay so that the loop's own pole has exactly the frequency of the target: Newton for the pole's
+/// decay and the delay together.
+bool tuneExactly(LoopModel& model, const LoopTarget& target) {
+    const double imaginary = target.p.imag();
+    double real = target.p.real();
+    std::vector<Complex> derivatives(constantCount(model));
+    for (int iteration = 0; iteration < 30; ++iteration) {
+        const Complex p(real, imaginary), s = std::tanh(0.5 * p);
+        const Complex miss = logLoop(model, p, s, derivatives) + Complex(0.0, 2.0 * pi * target.turns);
+        const Complex byReal = logLoopSlope(model, s), byDelay = derivatives[0];
+        const double determinant = byReal.real() * byDelay.imag() - byReal.imag() * byDelay.real();
+        const double realStep = -(miss.real() * byDelay.imag() - miss.imag() * byDelay.real()) / determinant;
+        const double delayStep = -(byReal.real() * miss.imag() - byReal.imag() * miss.real()) / determinant;
+        if (!std::isfinite(realStep) || !std::isfinite(delayStep))
+            return false;
+        real += realStep;
+        model.thiranDelay += delayStep;
+        if (model.delay() < leastDelay || model.thiranDelay <= 0.0)
+            return false;
+        if (std::abs(delayStep) < 1e-13 * model.delay() && std::abs(realStep) < 1e-14 + 1e-12 * std::abs(real))
+            return true;
+    }
+    return true;
+}
+
+LoopAccuracy measure(const LoopModel& model, const string::Partials& partials, double sampleRate,
+                     const LoopPlan& plan) {
+    LoopAccuracy accuracy;
+    accuracy.coveragePartial = plan.coveredPartial;
+    accuracy.coverageHz = partials.frequency(plan.coveredPartial);
+    double cents = 0.0;
+    for (int n = 1; n <= std::max(plan.coveredPartial, leastReported); ++n) {
+        const LoopTarget target = targetAt(partials, sampleRate, n);
+        if (n > plan.coveredPartial && target.frequency > 0.45 * sampleRate)
+            break;
+        // Beyond the covered partials the loop drifts away steadily: start from where the last one was.
+        const Complex start(target.p.real(), target.p.imag() * std::exp(cents / centsPerNeper));
+        const Complex pole = loopPole(model, target.turns, start);
+        LoopAccuracy::PartialError error{};
+        error.number = n;
+        error.targetHz = target.frequency;
+        error.cents = centsPerNeper * std::log(pole.imag() / target.p.imag());
+        error.t60Ratio = target.p.real() / pole.real();
+        if (n <= plan.coveredPartial) {
+            // NaN must not pass for small.
+            if (!(std::abs(error.cents) <= accuracy.worstCents))
+                accuracy.worstCents = std::isnan(error.cents) ? std::numeric_limits<double>::infinity()
+                                                              : std::abs(error.cents);
+            const double t60Error = std::abs(error.t60Ratio - 1.0);
+            if (target.frequency <= 6000.0 && !(t60Error <= accuracy.worstT60Error))
+                accuracy.worstT60Error = std::isnan(t60Error) ? std::numeric_limits<double>::infinity() : t60Error;
+        }
+        if (!std::isnan(error.cents)) {
+            cents = error.cents;
+            accuracy.partials.push_back(error);
+        }
+    }
+    return accuracy;
+}
+
+std::string shortNumber(double value) {
+    char text[32];
+    std::snprintf(text, sizeof text, "%.6g", value);
+    return text;
+}
+
+std::optional<Failure> cannotRun(const string::Partials& partials, const LoopSettings& settings) {
+    if (!(settings.sampleRate >= 8000.0 && settings.sampleRate <= 1.0e6))
+        return Failure{"the sample rate is " + shortNumber(settings.sampleRate) + " Hz: must be 8000 to 1000000 Hz"};
+    const double first = partials.frequency(1.0);
+    if (!(first > 0.0 && std::isfinite(first)))
+        return Failure{"the string has no first partial (" + shortNumber(first) + " Hz)"};
+    if (first > highestFirstPartial * settings.sampleRate)
+        return Failure{"its first partial, " + shortNumber(first) + " Hz, is too high for a sample rate of " +
+                       shortNumber(settings.sampleRate) + " Hz: must be at most " +
+                       shortNumber(highestFirstPartial * settings.sampleRate) + " Hz"};
+    return std::nullopt;
+}
+
+/// The last steps, alike for cold and warm starts: whole delay, loss on the damped poles, exact first partial.
+std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partials, const LoopSettings& settings,
+                                 const LoopPlan& plan, const std::vector<LoopTarget>& phase,
+                                 const std::vector<LoopTarget>& loss, int iterations) {
+    splitDelay(model);
+    fit(model, phase, loss, plan.coveredPartial, Fitted::phase, iterations);
+    splitDelay(model);
+
+    std::vector<LoopTarget> coveredLoss;
+    for (const LoopTarget& target : loss)
+        if (target.number <= plan.coveredPartial)
+            coveredLoss.push_back(target);
+    if (1 + 2 * model.shelves.size() <= coveredLoss.size())
+        fit(model, phase, coveredLoss, plan.coveredPartial, Fitted::loss, iterations);
+    if (!tuneExactly(model, phase.front()))
+        return std::nullopt;
+    LoopAccuracy accuracy = measure(model, partials, settings.sampleRate, plan);
+
+    if (accuracy.worstT60Error > goodT60 || accuracy.worstCents > 1.0 ||
+        plan.coveredPartial <= 2 * plan.sections + 1) {
+        LoopModel joint = model;
+        fit(joint, phase, coveredLoss, plan.coveredPartial, Fitted::both, 2 * iterations);
+        splitDelay(joint);
+        if (tuneExactly(joint, phase.front())) {
+            const LoopAccuracy jointAccuracy = measure(joint, partials, settings.sampleRate, plan);
+            const auto badness = [](const LoopAccuracy& a) { return a.worstCents + 100.0 / percentPerCent * a.worstT60Error; };
+            if (badness(jointAccuracy) < badness(accuracy)) {
+                model = joint;
+                accuracy = jointAccuracy;
+            }
+        }
+    }
+
+    LoopDesign design = designOf(model);
+    design.sampleRate = settings.sampleRate;
+    design.firstPartialHz = phase.front().frequency;
+    design.turn = partials.ends().oneFree() ? -1.0 : 1.0;
+    design.accuracy = std::move(accuracy);
+    design.accuracy.peakLoopGain = peakGain(design);
+    if (!std::isfinite(design.accuracy.worstCents) || !(design.accuracy.peakLoopGain < 1.0))
+        return std::nullopt;
+    return design;
+}
+
+} // namespace
+
+Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings& settings) {
+    if (const auto failure = cannotRun(partials, settings))
+        return *failure;
+    LoopPlan plan = planLoop(partials, settings);
+    const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
+    const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
+    LoopModel lossy;
+    fitLoss(lossy, loss, plan.coveredPartial, shelfCount);
+
+    // High strings may have no room for all the sections: every one takes delay out of the line.
+    for (; plan.sections >= 0; --plan.sections) {
+        LoopModel best;
+        double bestCost = std::numeric_limits<double>::infinity();
+        for (const double flatness : {0.6, 0.5, 0.7}) {
+            LoopModel model = lossy;
+            if (!placeSections(model, partials, settings.sampleRate, plan.coveredPartial, plan.sections, flatness))
+                continue;
+            const double cost = fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 60);
+            if (cost < bestCost) {
+                bestCost = cost;
+                best = model;
+            }
+            if (plan.sections == 0 || bestCost < goodCents * goodCents * static_cast<double>(phase.size()))
+                break;
+        }
+        if (!std::isfinite(bestCost))
+            continue;
+        if (auto design = finish(best, partials, settings, plan, phase, loss, 20))
+            return *std::move(design);
+    }
+    return Failure{"no loop could be fitted to a first partial of " + shortNumber(partials.frequency(1.0)) +
+                   " Hz at a sample rate of " + shortNumber(settings.sampleRate) + " Hz"};
+}
+
+Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partials& partials,
+                              const LoopSettings& settings) {
+    if (const auto failure = cannotRun(partials, settings))
+        return *failure;
+    const bool sameKind = neighbour.sampleRate == settings.sampleRate &&
+                          (neighbour.turn < 0.0) == partials.ends().oneFree() && neighbour.gain < 1.0;
+    LoopPlan plan = planLoop(partials, settings);
+    if (sameKind && plan.sections == static_cast<int>(neighbour.sections.size())) {
+        const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
+        const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
+        LoopModel model = modelOf(neighbour);
+        // The line takes the change of the period, so that the fit begins near its end.
+        const double change = settings.sampleRate / phase.front().frequency - settings.sampleRate / neighbour.firstPartialHz;
+        model.straightDelay += change;
+        if (model.delay() >= leastDelay) {
+            auto design = finish(model, partials, settings, plan, phase, loss, 6);
+            if (design && design->accuracy.worstCents <= std::max(warmCents, 1.2 * neighbour.accuracy.worstCents) &&
+                design->accuracy.worstT60Error <= std::max(goodT60, 1.2 * neighbour.accuracy.worstT60Error))
+                return *std::move(design);
+        }
+    }
+    return makeLoop(partials, settings);
+}
+
+} // namespace hitchpin::design
