@@ -1,0 +1,110 @@
+#include "dsp/design/InstrumentDesign.h"
+
+#include <algorithm>
+#include <cmath>
+#include <cstdio>
+
+namespace hitchpin::design {
+
+namespace {
+
+std::string nameOf(const CourseDescription& course, std::size_t index) {
+    return "courses[" + std::to_string(index) + "]" + (course.name.empty() ? "" : " (" + course.name + ")");
+}
+
+std::string placeOf(std::size_t string, std::size_t stringCount, int stop) {
+    std::string place;
+    if (stringCount > 1)
+        place += ", string " + std::to_string(string + 1);
+    if (stop > 0)
+        place += ", fret " + std::to_string(stop);
+    return place;
+}
+
+SpeakingString speaking(const string::Strung& strung, LoopDesign loop) {
+    const double length = strung.description.speakingLength;
+    return {std::move(loop), length, strung.statics.tension, 2.0 * length * strung.partials.harmonicF0()};
+}
+
+/// What the engine takes for granted.
+std::string problemWith(const InstrumentDescription& description) {
+    if (description.courses.empty())
+        return "the instrument has no courses";
+    for (std::size_t i = 0; i < description.bridges.size(); ++i) {
+        const BridgeDescription& bridge = description.bridges[i];
+        if (bridge.kind != BridgeKind::rigid && !(bridge.resistance > 0.0 && std::isfinite(bridge.resistance)))
+            return "bridges[" + std::to_string(i) + "]: its resistance must be over 0 kg/s";
+    }
+    for (std::size_t i = 0; i < description.courses.size(); ++i) {
+        const CourseDescription& course = description.courses[i];
+        if (course.strings.empty())
+            return nameOf(course, i) + ": has no strings";
+        if (course.bridge < 0 || course.bridge >= static_cast<int>(description.bridges.size()))
+            return nameOf(course, i) + ": stands on a bridge that the instrument does not have";
+        if (course.frets < 0)
+            return nameOf(course, i) + ": the number of frets is negative";
+    }
+    return {};
+}
+
+} // namespace
+
+Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentDescription& description,
+                                                               const LoopSettings& settings, const Progress& progress) {
+    if (std::string problem = problemWith(description); !problem.empty())
+        return Failure{std::move(problem)};
+
+    auto design = std::make_shared<InstrumentDesign>();
+    design->sampleRate = settings.sampleRate;
+    for (const BridgeDescription& bridge : description.bridges)
+        design->bridges.push_back({bridge.kind, bridge.kind == BridgeKind::rigid ? 0.0 : bridge.resistance});
+
+    std::size_t loops = 0, loopsDone = 0;
+    for (const CourseDescription& course : description.courses)
+        loops += course.strings.size() * static_cast<std::size_t>(course.frets + 1);
+
+    for (std::size_t c = 0; c < description.courses.size(); ++c) {
+        const CourseDescription& course = description.courses[c];
+        design->courses.push_back({course.key, static_cast<int>(design->strings.size()),
+                                   static_cast<int>(course.strings.size()), course.pluckRatio, course.hasDamper,
+                                   course.frets});
+        for (std::size_t s = 0; s < course.strings.size(); ++s) {
+            const string::Strung& open = course.strings[s];
+            StringDesign string;
+            string.course = static_cast<int>(c);
+            string.bridge = course.bridge;
+            string.bridgePosition = course.bridgePosition;
+            string.impedance = open.statics.impedance;
+            string.ends = open.description.ends;
+            for (int stop = 0; stop <= course.frets; ++stop) {
+                if (progress && !progress(static_cast<double>(loopsDone) / static_cast<double>(loops)))
+                    return Failure{"cancelled"};
+                const auto where = [&] { return nameOf(course, c) + placeOf(s, course.strings.size(), stop) + ": "; };
+                Result<string::Strung> stopped = stop == 0 ? Result<string::Strung>(open)
+                                                           : string::stoppedAt(open, std::exp2(-stop / 12.0));
+                if (!stopped)
+                    return Failure{where() + stopped.error().message};
+
+                // Warm starts: the other strings of a course from the first one, each fret from the one below.
+                const LoopDesign* neighbour = nullptr;
+                if (s > 0)
+                    neighbour = &design->strings.back().stops[static_cast<std::size_t>(stop)].loop;
+                else if (stop > 0)
+                    neighbour = &string.stops.back().loop;
+                Result<LoopDesign> loop = neighbour ? retuneLoop(*neighbour, stopped->partials, settings)
+                                                    : makeLoop(stopped->partials, settings);
+                if (!loop)
+                    return Failure{where() + loop.error().message};
+                design->longestT60 = std::max(design->longestT60, stopped->partials.t60(1.0));
+                string.stops.push_back(speaking(*stopped, *std::move(loop)));
+                ++loopsDone;
+            }
+            design->strings.push_back(std::move(string));
+        }
+    }
+    if (progress)
+        progress(1.0);
+    return std::shared_ptr<const InstrumentDesign>(std::move(design));
+}
+
+} // namespace hitchpin::design
