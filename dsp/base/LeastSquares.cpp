@@ -26,7 +26,8 @@ double minimiseSquares(const ResidualFunction& residualsAt, std::vector<double>&
 
     double damping = 1e-3;
     int poorSteps = 0;
-    for (int iteration = 0; iteration < limits.iterations && poorSteps < 2; ++iteration) {
+    for (int iteration = 0; iteration < limits.iterations && poorSteps < 2 && cost > limits.goodCost;
+         ++iteration) {
         normal.setZero();
         normal.selfadjointView<Eigen::Lower>().rankUpdate(jacobian.transpose());
         gradient.noalias() = jacobian.transpose() * residuals;

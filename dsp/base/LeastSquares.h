@@ -16,6 +16,7 @@ struct LeastSquaresLimits {
     int iterations = 50;
     double largestStep = 0.0;        ///< of any one parameter in one iteration; 0: no limit
     double smallestImprovement = 1e-4; ///< share of the cost; two smaller ones in a row end the search
+    double goodCost = 0.0;           ///< a sum of squares below this needs no further search
 };
 
 /// Levenberg (1944) and Marquardt (1963): Gauss–Newton steps, damped by the diagonal of JᵀJ until the cost falls.

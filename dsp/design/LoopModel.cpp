@@ -28,6 +28,13 @@ Complex logQuotient(Complex upper, Complex lower) {
     return {0.5 * std::log(std::norm(upper) / std::norm(lower)), std::atan2(product.imag(), product.real())};
 }
 
+/// Whether a's angle in (−π, π] is the higher one.
+bool higherAngle(Complex a, Complex b) {
+    if ((a.imag() >= 0.0) != (b.imag() >= 0.0))
+        return a.imag() >= 0.0;
+    return b.real() * a.imag() - b.imag() * a.real() > 0.0;
+}
+
 struct ShelfParts {
     Complex upper;
     Complex lower;
@@ -83,7 +90,7 @@ bool setConstants(LoopModel& model, std::span<const double> constants, std::size
     return true;
 }
 
-Complex logLoop(const LoopModel& model, Complex p, Complex s, std::span<Complex> byConstant) {
+Complex logLine(const LoopModel& model, Complex p, Complex s, std::span<Complex> byConstant) {
     const bool derivatives = !byConstant.empty();
     Complex sum = -model.straightDelay * p;
     if (derivatives)
@@ -99,29 +106,34 @@ Complex logLoop(const LoopModel& model, Complex p, Complex s, std::span<Complex>
     }
 
     const Complex s2 = times(s, s);
-    Complex magnitude = 1.0; // product of the sections; only its modulus is used, the angles are summed
+    // Every section turns by an angle between 0 (at rest) and −2π (at half the rate). Instead of adding arcs, the
+    // quotients are multiplied, and a full turn is counted whenever the product's angle rises.
+    Complex product = 1.0;
+    int fullTurns = 0;
     for (std::size_t k = 0; k < model.sections.size(); ++k) {
         const AllpassSection& section = model.sections[k];
         const Complex upper = s2 - section.c1 * s + section.c0, lower = s2 + section.c1 * s + section.c0;
-        const Complex quotient = times(upper, inverse(lower));
-        double angle = std::atan2(quotient.imag(), quotient.real());
-        if (angle > 0.0)
-            angle -= 2.0 * pi; // from 0 at rest to −2π at half the rate
-        sum += Complex(0.0, angle);
-        magnitude = times(magnitude, quotient);
+        const Complex overLower = inverse(lower);
+        const Complex next = times(product, times(upper, overLower));
+        fullTurns += higherAngle(next, product) ? 1 : 0;
+        product = next;
         if (derivatives) {
             // d ln A/d ln c0 = c0·(1/N − 1/D) = 2c0c1·s/(ND);  d ln A/d ln c1 = −c1·s·(1/N + 1/D)
-            const Complex common = (2.0 * section.c1) * times(s, inverse(times(upper, lower)));
+            const Complex common = (2.0 * section.c1) * times(s, times(overLower, inverse(upper)));
             byConstant[1 + 2 * k] = section.c0 * common;
             byConstant[2 + 2 * k] = -times(common, s2 + section.c0);
         }
     }
-    sum += 0.5 * std::log(std::norm(magnitude));
+    sum += Complex(0.5 * std::log(std::norm(product)),
+                   std::atan2(product.imag(), product.real()) - 2.0 * pi * fullTurns);
+    return sum;
+}
 
-    const std::size_t lossAt = firstLossConstant(model);
-    sum -= model.loss;
+Complex logLoss(const LoopModel& model, Complex s, std::span<Complex> byConstant) {
+    const bool derivatives = !byConstant.empty();
+    Complex sum = -model.loss;
     if (derivatives)
-        byConstant[lossAt] = -model.loss;
+        byConstant[0] = -model.loss;
     for (std::size_t i = 0; i < model.shelves.size(); ++i) {
         const ShelfModel& shelf = model.shelves[i];
         const double gamma = std::exp(-shelf.depth);
@@ -130,8 +142,8 @@ Complex logLoop(const LoopModel& model, Complex p, Complex s, std::span<Complex>
         if (derivatives) {
             const Complex overUpper = inverse(upper), overLower = inverse(lower);
             const bool high = shelf.loses == ShelfModel::Loses::high;
-            byConstant[lossAt + 1 + 2 * i] = shelf.corner * ((high ? 1.0 : gamma) * overUpper - overLower);
-            byConstant[lossAt + 2 + 2 * i] =
+            byConstant[1 + 2 * i] = shelf.corner * ((high ? 1.0 : gamma) * overUpper - overLower);
+            byConstant[2 + 2 * i] =
                 (-gamma * shelf.depth) * times(high ? s : Complex(shelf.corner), overUpper);
         }
     }
@@ -159,7 +171,7 @@ Complex loopPole(const LoopModel& model, double turns, Complex start) {
     Complex p = start;
     for (int iteration = 0; iteration < 40; ++iteration) {
         const Complex s = std::tanh(0.5 * p);
-        const Complex miss = logLoop(model, p, s, {}) + Complex(0.0, 2.0 * pi * turns);
+        const Complex miss = logLine(model, p, s) + logLoss(model, s) + Complex(0.0, 2.0 * pi * turns);
         Complex step = -times(miss, inverse(logLoopSlope(model, s)));
         // A step longer than a tenth of a partial may jump to the next one.
         const double longest = 0.1 * p.imag() / std::max(1.0, turns) + 1e-6;

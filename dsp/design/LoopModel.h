@@ -37,10 +37,13 @@ std::vector<double> constantsOf(const LoopModel&);
 /// False, and the model left half changed, where the delay is negative or a constant is out of all bounds.
 bool setConstants(LoopModel&, std::span<const double>, std::size_t first = 0);
 
-/// ln L(e^p) without the turn, its imaginary part followed continuously from 0 at p = 0.
-/// `s` = tanh(p/2). `byConstant` may be empty; else it receives d ln L/d constant for each of constantsOf().
-std::complex<double> logLoop(const LoopModel&, std::complex<double> p, std::complex<double> s,
-                             std::span<std::complex<double>> byConstant);
+/// ln L(e^p) without the turn, in its two parts: line, Thiran and sections; gain and shelves. Imaginary parts are
+/// followed continuously from 0 at p = 0. `s` = tanh(p/2). `byConstant` may be empty; else it receives the
+/// derivatives by the constants of that part: the first firstLossConstant() ones, and the others.
+std::complex<double> logLine(const LoopModel&, std::complex<double> p, std::complex<double> s,
+                             std::span<std::complex<double>> byConstant = {});
+std::complex<double> logLoss(const LoopModel&, std::complex<double> s,
+                             std::span<std::complex<double>> byConstant = {});
 
 /// d ln L(e^p)/dp.
 std::complex<double> logLoopSlope(const LoopModel&, std::complex<double> s);

@@ -26,8 +26,9 @@ constexpr double highestFirstPartial = 0.4;
 /// One sample for the line and half a one for Thiran's section.
 constexpr double leastDelay = 1.5;
 constexpr int shelfCount = 3;
-/// A fit this good (root mean square, cents) needs no other start.
-constexpr double goodCents = 0.05;
+/// A fit this good (root mean square, cents) needs no further search.
+constexpr double goodCentsLive = 0.02;
+constexpr double goodCentsReference = 0.003;
 /// Losses off by more than this are fitted again together with the phase.
 constexpr double goodT60 = 0.03;
 /// In a fit of both, so many per cent of T60 weigh as much as a cent.
@@ -37,12 +38,17 @@ constexpr double warmCents = 0.8;
 /// The report goes at least this far, also where the fit does not.
 constexpr int leastReported = 64;
 
+double goodCost(const LoopSettings& settings, const std::vector<LoopTarget>& phase) {
+    const double cents = settings.quality == Quality::live ? goodCentsLive : goodCentsReference;
+    return cents * cents * static_cast<double>(phase.size());
+}
+
 enum class Fitted { phase, loss, both };
 
 /// Moves the model's constants towards the targets' poles. Phase in cents at `phase`, loss in per cent at `loss`,
 /// both at the damped poles. Returns the sum of squares.
 double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss,
-           int coveredPartial, Fitted what, int iterations) {
+           int coveredPartial, Fitted what, int iterations, double enough = 0.0) {
     const std::size_t lossAt = firstLossConstant(model), count = constantCount(model);
     const std::size_t first = what == Fitted::loss ? lossAt : 0;
     const std::size_t end = what == Fitted::phase ? lossAt : count;
@@ -52,25 +58,35 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
     const std::vector<double> all = constantsOf(model);
     std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first),
                                   all.begin() + static_cast<std::ptrdiff_t>(end));
+    const auto targetOf = [&](std::size_t row) -> const LoopTarget& {
+        return row < phaseRows ? phase[row] : loss[row - phaseRows];
+    };
+    // The part of the loop that stays as it is, once for all.
+    std::vector<Complex> still(rows);
+    for (std::size_t i = 0; i < rows && what != Fitted::both; ++i) {
+        const LoopTarget& target = targetOf(i);
+        still[i] = what == Fitted::phase ? logLoss(model, target.s) : logLine(model, target.p, target.s);
+    }
+
     std::vector<Complex> derivatives(count);
     const double lossScale = what == Fitted::both ? 100.0 / percentPerCent : 100.0;
-
     const auto residualsAt = [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
         if (!setConstants(model, trial, first) || model.delay() < leastDelay)
             return false;
         const std::span<Complex> wanted = jacobian.empty() ? std::span<Complex>{} : std::span<Complex>(derivatives);
         for (std::size_t i = 0; i < rows; ++i) {
-            const bool isPhase = i < phaseRows;
-            const LoopTarget& target = isPhase ? phase[i] : loss[i - phaseRows];
-            const Complex log = logLoop(model, target.p, target.s, wanted);
-            if (isPhase) {
+            const LoopTarget& target = targetOf(i);
+            Complex log = still[i];
+            if (what != Fitted::loss)
+                log += logLine(model, target.p, target.s, wanted);
+            if (what != Fitted::phase)
+                log += logLoss(model, target.s, wanted.empty() ? wanted : wanted.subspan(lossAt));
+            if (i < phaseRows) {
                 const double scale = centsPerNeper / (target.p.imag() * target.groupDelay);
                 residuals[i] = scale * (log.imag() + 2.0 * pi * target.turns);
                 for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
                     jacobian[(j - first) * rows + i] = scale * derivatives[j].imag();
             } else {
-                // Beyond the covered partials the straight part of the loop is longer or shorter than the
-                // string: there the loss alone is held, taken off the growth of e^(−pM) at the damped pole.
                 const double scale = lossScale * lossWeight(target, coveredPartial) / target.loss;
                 residuals[i] = scale * log.real();
                 for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
@@ -80,13 +96,19 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
         return true;
     };
     const double cost = minimiseSquares(residualsAt, constants, rows,
-                                        {.iterations = iterations, .largestStep = 0.7, .smallestImprovement = 1e-3});
+                                        {.iterations = iterations,
+                                         .largestStep = 0.7,
+                                         .smallestImprovement = 1e-3,
+                                         .goodCost = enough});
     setConstants(model, constants, first);
     return cost;
 }
 
-/// From one fractional delay to whole samples and Thiran's section with 0.5 ≤ d < 1.5.
+/// From one fractional delay to whole samples and Thiran's section with 0.5 ≤ d < 1.5. A fit that moved d a
+/// little out of that range is left alone: it has Thiran's phase at that d in it.
 void splitDelay(LoopModel& model) {
+    if (model.thiranDelay > 0.3 && model.thiranDelay < 2.0)
+        return;
     const double whole = std::max(1.0, std::floor(model.delay() - 0.5));
     model.thiranDelay = model.delay() - whole;
     model.straightDelay = whole;
@@ -97,10 +119,10 @@ void splitDelay(LoopModel& model) {
 bool tuneExactly(LoopModel& model, const LoopTarget& target) {
     const double imaginary = target.p.imag();
     double real = target.p.real();
-    std::vector<Complex> derivatives(constantCount(model));
+    std::vector<Complex> derivatives(firstLossConstant(model));
     for (int iteration = 0; iteration < 30; ++iteration) {
         const Complex p(real, imaginary), s = std::tanh(0.5 * p);
-        const Complex miss = logLoop(model, p, s, derivatives) + Complex(0.0, 2.0 * pi * target.turns);
+        const Complex miss = logLine(model, p, s, derivatives) + logLoss(model, s) + Complex(0.0, 2.0 * pi * target.turns);
         const Complex byReal = logLoopSlope(model, s), byDelay = derivatives[0];
         const double determinant = byReal.real() * byDelay.imag() - byReal.imag() * byDelay.real();
         const double realStep = -(miss.real() * byDelay.imag() - miss.imag() * byDelay.real()) / determinant;
@@ -176,15 +198,15 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
                                  const LoopPlan& plan, const std::vector<LoopTarget>& phase,
                                  const std::vector<LoopTarget>& loss, int iterations) {
     splitDelay(model);
-    fit(model, phase, loss, plan.coveredPartial, Fitted::phase, iterations);
-    splitDelay(model);
 
-    std::vector<LoopTarget> coveredLoss;
+    std::vector<LoopTarget> coveredLoss; // beyond, the loop's delay is not the string's any more
     for (const LoopTarget& target : loss)
         if (target.number <= plan.coveredPartial)
             coveredLoss.push_back(target);
     if (1 + 2 * model.shelves.size() <= coveredLoss.size())
         fit(model, phase, coveredLoss, plan.coveredPartial, Fitted::loss, iterations);
+    fit(model, phase, loss, plan.coveredPartial, Fitted::phase, iterations, goodCost(settings, phase));
+    splitDelay(model);
     if (!tuneExactly(model, phase.front()))
         return std::nullopt;
     LoopAccuracy accuracy = measure(model, partials, settings.sampleRate, plan);
@@ -226,20 +248,26 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     LoopModel lossy;
     fitLoss(lossy, loss, plan.coveredPartial, shelfCount);
 
+    const double good = goodCost(settings, phase);
+
     // High strings may have no room for all the sections: every one takes delay out of the line.
     for (; plan.sections >= 0; --plan.sections) {
         LoopModel best;
         double bestCost = std::numeric_limits<double>::infinity();
-        for (const double flatness : {0.6, 0.5, 0.7}) {
+        for (const double flatness : {0.4, 0.6}) {
             LoopModel model = lossy;
             if (!placeSections(model, partials, settings.sampleRate, plan.coveredPartial, plan.sections, flatness))
                 continue;
-            const double cost = fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 60);
+            // First with a plain delay, which may move far from where the placement put it; then with Thiran's.
+            if (!std::isfinite(fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 100, good)))
+                continue;
+            splitDelay(model);
+            const double cost = fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 100, good);
             if (cost < bestCost) {
                 bestCost = cost;
                 best = model;
             }
-            if (plan.sections == 0 || bestCost < goodCents * goodCents * static_cast<double>(phase.size()))
+            if (plan.sections == 0 || bestCost <= good)
                 break;
         }
         if (!std::isfinite(bestCost))
