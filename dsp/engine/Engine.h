@@ -40,6 +40,8 @@ public:
     void damp(int string, double t60) noexcept;
     /// Puts everything out within some milliseconds, without a click.
     void silence() noexcept;
+    /// The same for one string.
+    void silence(int string) noexcept;
     void listen(const Listening&) noexcept;
 
     /// Adds nothing: writes `frames` samples of bridge force in newtons. `right` may be null.
@@ -47,6 +49,8 @@ public:
 
     /// Joules on all strings: never grows but by what a pluck puts in.
     double energy() const noexcept;
+    /// Joules on one string.
+    double energy(int string) const noexcept;
     /// True when nothing would sound any more.
     bool silent() const noexcept;
     /// Strings that are being computed now.

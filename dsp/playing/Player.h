@@ -69,6 +69,10 @@ public:
     /// `events` by rising frame. Writes newtons of bridge force. `right` may be null.
     void process(std::span<const Event> events, double* left, double* right, int frames) noexcept;
 
+    /// Puts out the `count` sounding strings that carry the least energy, as if touched: for machines that cannot
+    /// run them all. Costs a look at every sounding string. Returns how many were put out.
+    int putOutQuietest(int count) noexcept;
+
     bool silent() const noexcept;
     int ringingStrings() const noexcept;
     KeyState keyState(int key) const noexcept;
