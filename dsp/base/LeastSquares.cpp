@@ -36,7 +36,8 @@ double minimiseSquares(const ResidualFunction& residualsAt, std::vector<double>&
         for (int attempt = 0; attempt < 12 && !accepted; ++attempt) {
             damped = normal;
             // The small constant keeps a parameter without influence (a shelf that fades out) in place.
-            damped.diagonal().array() += damping * (normal.diagonal().array() + 1e-12 * normal.diagonal().maxCoeff());
+            damped.diagonal().array() +=
+                damping * (normal.diagonal().array() + 1e-12 * normal.diagonal().maxCoeff());
             step = damped.selfadjointView<Eigen::Lower>().ldlt().solve(-gradient);
             if (limits.largestStep > 0.0) {
                 const double largest = step.cwiseAbs().maxCoeff();

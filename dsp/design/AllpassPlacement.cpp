@@ -13,7 +13,8 @@ namespace {
 constexpr double pi = std::numbers::pi;
 constexpr double highestShareOfRate = 0.45;
 
-/// A pole pair at angle ±θ whose group delay holds 2π within θ ± Δ and has fallen to β of its peak at the edges.
+/// A pole pair at angle ±θ whose group delay holds 2π within θ ± Δ and has fallen to β of its peak at the
+/// edges.
 AllpassSection sectionOver(double from, double to, double flatness) {
     const double theta = 0.5 * (from + to), half = 0.5 * (to - from);
     const double eta = (1.0 - flatness * std::cos(half)) / (1.0 - flatness);
@@ -32,7 +33,8 @@ bool placeSections(LoopModel& model, const string::Partials& partials, double sa
     // n_c: how far the sections' phase reaches.
     double last = coveredPartial;
     const double wanted = sections / 1.1;
-    while (sectionsNeeded(partials, last) < wanted && partials.frequency(last * 1.02 + 0.01) < highestShareOfRate * sampleRate)
+    while (sectionsNeeded(partials, last) < wanted &&
+           partials.frequency(last * 1.02 + 0.01) < highestShareOfRate * sampleRate)
         last = last * 1.02 + 0.01;
     const double lastAngle = angle(last), lastDelay = sampleRate / partials.slope(last);
 

@@ -32,7 +32,8 @@ std::string problemWith(const InstrumentDescription& description) {
         return "the instrument has no courses";
     for (std::size_t i = 0; i < description.bridges.size(); ++i) {
         const BridgeDescription& bridge = description.bridges[i];
-        if (bridge.kind != BridgeKind::rigid && !(bridge.resistance > 0.0 && std::isfinite(bridge.resistance)))
+        if (bridge.kind != BridgeKind::rigid &&
+            !(bridge.resistance > 0.0 && std::isfinite(bridge.resistance)))
             return "bridges[" + std::to_string(i) + "]: its resistance must be over 0 kg/s";
     }
     for (std::size_t i = 0; i < description.courses.size(); ++i) {
@@ -50,7 +51,8 @@ std::string problemWith(const InstrumentDescription& description) {
 } // namespace
 
 Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentDescription& description,
-                                                               const LoopSettings& settings, const Progress& progress) {
+                                                               const LoopSettings& settings,
+                                                               const Progress& progress) {
     if (std::string problem = problemWith(description); !problem.empty())
         return Failure{std::move(problem)};
 
@@ -66,8 +68,8 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
     for (std::size_t c = 0; c < description.courses.size(); ++c) {
         const CourseDescription& course = description.courses[c];
         design->courses.push_back({course.key, static_cast<int>(design->strings.size()),
-                                   static_cast<int>(course.strings.size()), course.pluckRatio, course.hasDamper,
-                                   course.frets});
+                                   static_cast<int>(course.strings.size()), course.pluckRatio,
+                                   course.hasDamper, course.frets});
         for (std::size_t s = 0; s < course.strings.size(); ++s) {
             const string::Strung& open = course.strings[s];
             StringDesign string;
@@ -79,13 +81,16 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
             for (int stop = 0; stop <= course.frets; ++stop) {
                 if (progress && !progress(static_cast<double>(loopsDone) / static_cast<double>(loops)))
                     return Failure{"cancelled"};
-                const auto where = [&] { return nameOf(course, c) + placeOf(s, course.strings.size(), stop) + ": "; };
+                const auto where = [&] {
+                    return nameOf(course, c) + placeOf(s, course.strings.size(), stop) + ": ";
+                };
                 Result<string::Strung> stopped = stop == 0 ? Result<string::Strung>(open)
                                                            : string::stoppedAt(open, std::exp2(-stop / 12.0));
                 if (!stopped)
                     return Failure{where() + stopped.error().message};
 
-                // Warm starts: the other strings of a course from the first one, each fret from the one below.
+                // Warm starts: the other strings of a course from the first one, each fret from the one
+                // below.
                 const LoopDesign* neighbour = nullptr;
                 if (s > 0)
                     neighbour = &design->strings.back().stops[static_cast<std::size_t>(stop)].loop;

@@ -14,7 +14,8 @@ namespace {
 using Complex = std::complex<double>;
 constexpr double pi = std::numbers::pi;
 
-/// Products written out: the library's own check for infinities at every turn, which costs half the design time.
+/// Products written out: the library's own check for infinities at every turn, which costs half the design
+/// time.
 Complex times(Complex a, Complex b) {
     return {a.real() * b.real() - a.imag() * b.imag(), a.real() * b.imag() + a.imag() * b.real()};
 }
@@ -47,9 +48,13 @@ ShelfParts partsOf(const ShelfModel& shelf, double gamma, Complex s) {
 
 } // namespace
 
-std::size_t constantCount(const LoopModel& model) { return firstLossConstant(model) + 1 + 2 * model.shelves.size(); }
+std::size_t constantCount(const LoopModel& model) {
+    return firstLossConstant(model) + 1 + 2 * model.shelves.size();
+}
 
-std::size_t firstLossConstant(const LoopModel& model) { return 1 + 2 * model.sections.size(); }
+std::size_t firstLossConstant(const LoopModel& model) {
+    return 1 + 2 * model.sections.size();
+}
 
 std::vector<double> constantsOf(const LoopModel& model) {
     std::vector<double> constants{model.thiranDelay > 0.0 ? model.thiranDelay : model.straightDelay};
@@ -106,8 +111,8 @@ Complex logLine(const LoopModel& model, Complex p, Complex s, std::span<Complex>
     }
 
     const Complex s2 = times(s, s);
-    // Every section turns by an angle between 0 (at rest) and −2π (at half the rate). Instead of adding arcs, the
-    // quotients are multiplied, and a full turn is counted whenever the product's angle rises.
+    // Every section turns by an angle between 0 (at rest) and −2π (at half the rate). Instead of adding arcs,
+    // the quotients are multiplied, and a full turn is counted whenever the product's angle rises.
     Complex product = 1.0;
     int fullTurns = 0;
     for (std::size_t k = 0; k < model.sections.size(); ++k) {
@@ -229,9 +234,12 @@ double peakGain(const LoopDesign& design) {
     const double lowest = 1e-4; // of tan(ω/2)
     double peak = 0.0;
     for (int i = 0; i <= points + 1; ++i) {
-        // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the rate.
+        // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the
+        // rate.
         const double x = lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
-        const Complex back = i == 0 ? Complex(1.0) : i > points ? Complex(-1.0) : Complex(1.0, -x) / Complex(1.0, x);
+        const Complex back = i == 0       ? Complex(1.0)
+                             : i > points ? Complex(-1.0)
+                                          : Complex(1.0, -x) / Complex(1.0, x);
         double squared = design.gain * design.gain;
         for (const LossShelf& shelf : design.shelves)
             squared *= std::norm(shelf.b0 + shelf.b1 * back) / std::norm(1.0 + shelf.a1 * back);

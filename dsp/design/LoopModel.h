@@ -1,4 +1,5 @@
-// A loop as a formula: ln L(e^p) anywhere in the complex plane, with its derivatives by p and by every constant.
+// A loop as a formula: ln L(e^p) anywhere in the complex plane, with its derivatives by p and by every
+// constant.
 #pragma once
 
 #include "dsp/design/LoopDesign.h"
@@ -9,8 +10,8 @@
 
 namespace hitchpin::design {
 
-/// s = (1−z⁻¹)/(1+z⁻¹), w the corner tan(ω/2), γ = e^(−depth) < 1. High: (w + γs)/(w + s) loses above the corner;
-/// low: (γw + s)/(w + s) loses below it. |H| ≤ 1 by construction.
+/// s = (1−z⁻¹)/(1+z⁻¹), w the corner tan(ω/2), γ = e^(−depth) < 1. High: (w + γs)/(w + s) loses above the
+/// corner; low: (γw + s)/(w + s) loses below it. |H| ≤ 1 by construction.
 struct ShelfModel {
     enum class Loses { high, low } loses = Loses::high;
     double corner = 1.0;
@@ -37,9 +38,9 @@ std::vector<double> constantsOf(const LoopModel&);
 /// False, and the model left half changed, where the delay is negative or a constant is out of all bounds.
 bool setConstants(LoopModel&, std::span<const double>, std::size_t first = 0);
 
-/// ln L(e^p) without the turn, in its two parts: line, Thiran and sections; gain and shelves. Imaginary parts are
-/// followed continuously from 0 at p = 0. `s` = tanh(p/2). `byConstant` may be empty; else it receives the
-/// derivatives by the constants of that part: the first firstLossConstant() ones, and the others.
+/// ln L(e^p) without the turn, in its two parts: line, Thiran and sections; gain and shelves. Imaginary parts
+/// are followed continuously from 0 at p = 0. `s` = tanh(p/2). `byConstant` may be empty; else it receives
+/// the derivatives by the constants of that part: the first firstLossConstant() ones, and the others.
 std::complex<double> logLine(const LoopModel&, std::complex<double> p, std::complex<double> s,
                              std::span<std::complex<double>> byConstant = {});
 std::complex<double> logLoss(const LoopModel&, std::complex<double> s,

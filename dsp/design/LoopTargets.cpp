@@ -12,15 +12,18 @@ constexpr double pi = std::numbers::pi;
 
 /// Share of the sample rate up to which partials are looked after at all.
 constexpr double usableShareOfRate = 0.45;
-/// A loss this small (nepers a round) rings for days; it stands in for none, which could not be fitted in ratio.
+/// Hz: what rings higher is not heard.
+constexpr double hearing = 20000.0;
+/// A loss this small (nepers a round) rings for days; it stands in for none, which could not be fitted in
+/// ratio.
 constexpr double leastLoss = 1e-9;
 
 struct Ambition {
-    double reachHz;       ///< partials are followed up to here…
-    int mostPartials;     ///< …or to this one
-    int leastPartials;    ///< but the first few also above `reachHz`
+    double reachHz;    ///< partials are followed up to here…
+    int mostPartials;  ///< …or to this one
+    int leastPartials; ///< but the first few also above `reachHz`
     int mostSections;
-    double margin;        ///< sections beyond X(n)
+    double margin; ///< sections beyond X(n)
 };
 
 constexpr Ambition live{10000.0, 120, 4, 12, 1.3};
@@ -51,6 +54,10 @@ double sectionsNeeded(const string::Partials& partials, double number) {
     return std::max(0.0, turns - partials.frequency(number) / partials.slope(number));
 }
 
+int mostSections(Quality quality) {
+    return (quality == Quality::live ? live : reference).mostSections;
+}
+
 LoopPlan planLoop(const string::Partials& partials, const LoopSettings& settings) {
     const Ambition& aim = settings.quality == Quality::live ? live : reference;
     const double usable = usableShareOfRate * settings.sampleRate;
@@ -73,7 +80,8 @@ LoopPlan planLoop(const string::Partials& partials, const LoopSettings& settings
     return plan;
 }
 
-std::vector<LoopTarget> phaseTargets(const string::Partials& partials, double sampleRate, int coveredPartial) {
+std::vector<LoopTarget> phaseTargets(const string::Partials& partials, double sampleRate,
+                                     int coveredPartial) {
     std::vector<LoopTarget> targets;
     for (int half = 2; half <= 2 * coveredPartial; ++half)
         targets.push_back(targetAt(partials, sampleRate, 0.5 * half));
@@ -82,12 +90,16 @@ std::vector<LoopTarget> phaseTargets(const string::Partials& partials, double sa
 
 std::vector<LoopTarget> lossTargets(const string::Partials& partials, double sampleRate, int coveredPartial) {
     std::vector<LoopTarget> targets;
-    const int step = 1 + coveredPartial / 40;
-    for (int n = 1; n <= coveredPartial; n += n < 12 ? 1 : step)
+    const double step = coveredPartial < 4 ? 0.5 : 1.0 + coveredPartial / 40;
+    for (double n = 1.0; n <= coveredPartial; n += coveredPartial >= 4 && n < 12.0 ? 1.0 : step)
         targets.push_back(targetAt(partials, sampleRate, n));
     const double lastDelay = targets.back().groupDelay;
-    for (double n = coveredPartial * 1.15 + 1.0; partials.frequency(n) < usableShareOfRate * sampleRate; n *= 1.15) {
+    const double highest = std::min(hearing, usableShareOfRate * sampleRate);
+    for (double n = coveredPartial * 1.15 + 1.0; partials.frequency(n) < highest; n *= 1.15) {
         LoopTarget beyond = targetAt(partials, sampleRate, n);
+        beyond.beyond = true;
+        beyond.p = {0.0, beyond.p.imag()};
+        beyond.s = {0.0, std::tan(0.5 * beyond.p.imag())};
         beyond.groupDelay = std::max(beyond.groupDelay, lastDelay);
         beyond.loss = beyond.decayRate * beyond.groupDelay / sampleRate;
         targets.push_back(beyond);

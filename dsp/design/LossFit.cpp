@@ -66,18 +66,18 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
 
 } // namespace
 
-double lossWeight(const LoopTarget& target, int coveredPartial) {
-    if (target.number > coveredPartial)
+double lossWeight(const LoopTarget& target) {
+    if (target.beyond)
         return 0.2;
     return target.frequency <= 6000.0 ? 1.0 : 0.5;
 }
 
-void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int coveredPartial, int shelfCount) {
+void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int shelfCount) {
     std::vector<LossPoint> points;
     double least = std::numeric_limits<double>::infinity(), most = 0.0;
     for (const LoopTarget& target : targets) {
         const double x = std::tan(0.5 * target.p.imag());
-        points.push_back({x * x, target.loss, lossWeight(target, coveredPartial)});
+        points.push_back({x * x, target.loss, lossWeight(target)});
         least = std::min(least, target.loss);
         most = std::max(most, target.loss);
     }
@@ -89,8 +89,10 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int cover
     model.shelves.clear();
     const double good = goodPercent * goodPercent * static_cast<double>(points.size());
     double cost = refine(model, points, 20);
-    const double lowest = std::sqrt(points.front().x2), highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
-    for (int shelf = 0; shelf < shelfCount && cost > good && 1 + 2 * (shelf + 1) <= static_cast<int>(points.size());
+    const double lowest = std::sqrt(points.front().x2),
+                 highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
+    for (int shelf = 0;
+         shelf < shelfCount && cost > good && 1 + 2 * (shelf + 1) <= static_cast<int>(points.size());
          ++shelf) {
         constexpr int corners = 8;
         LoopModel best;

@@ -7,10 +7,10 @@
 namespace hitchpin::design {
 
 /// How much a loss target counts: fully up to 6 kHz, less above, and least beyond the covered partials.
-double lossWeight(const LoopTarget&, int coveredPartial);
+double lossWeight(const LoopTarget&);
 
-/// Sets the model's loss and up to `shelfCount` shelves so that −ln|H| on the unit circle meets the targets in
-/// ratio: greedy, each new shelf the best of several corners of both kinds, all refined together.
-void fitLoss(LoopModel&, const std::vector<LoopTarget>&, int coveredPartial, int shelfCount);
+/// Sets the model's loss and up to `shelfCount` shelves so that −ln|H| on the unit circle meets the targets
+/// in ratio: greedy, each new shelf the best of several corners of both kinds, all refined together.
+void fitLoss(LoopModel&, const std::vector<LoopTarget>&, int shelfCount);
 
 } // namespace hitchpin::design

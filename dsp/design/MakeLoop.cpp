@@ -29,6 +29,10 @@ constexpr int shelfCount = 3;
 /// A fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02;
 constexpr double goodCentsReference = 0.003;
+/// A fit within so many times the good one is as good as it gets with some strings.
+constexpr double usualRatio = 15.0;
+/// Worst partial of a design that needs no more sections, cents.
+constexpr double trueCents = 1.0;
 /// Losses off by more than this are fitted again together with the phase.
 constexpr double goodT60 = 0.03;
 /// In a fit of both, so many per cent of T60 weigh as much as a cent.
@@ -45,10 +49,10 @@ double goodCost(const LoopSettings& settings, const std::vector<LoopTarget>& pha
 
 enum class Fitted { phase, loss, both };
 
-/// Moves the model's constants towards the targets' poles. Phase in cents at `phase`, loss in per cent at `loss`,
-/// both at the damped poles. Returns the sum of squares.
+/// Moves the model's constants towards the targets' poles. Phase in cents at `phase`, loss in per cent at
+/// `loss`, both at the damped poles. Returns the sum of squares.
 double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss,
-           int coveredPartial, Fitted what, int iterations, double enough = 0.0) {
+           Fitted what, int iterations, double enough = 0.0) {
     const std::size_t lossAt = firstLossConstant(model), count = constantCount(model);
     const std::size_t first = what == Fitted::loss ? lossAt : 0;
     const std::size_t end = what == Fitted::phase ? lossAt : count;
@@ -65,20 +69,30 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
     std::vector<Complex> still(rows);
     for (std::size_t i = 0; i < rows && what != Fitted::both; ++i) {
         const LoopTarget& target = targetOf(i);
-        still[i] = what == Fitted::phase ? logLoss(model, target.s) : logLine(model, target.p, target.s);
+        if (what == Fitted::phase)
+            still[i] = logLoss(model, target.s);
+        else if (!target.beyond)
+            still[i] = logLine(model, target.p, target.s);
     }
 
     std::vector<Complex> derivatives(count);
     const double lossScale = what == Fitted::both ? 100.0 / percentPerCent : 100.0;
-    const auto residualsAt = [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
+    const auto residualsAt = [&](std::span<const double> trial, std::span<double> residuals,
+                                 std::span<double> jacobian) {
         if (!setConstants(model, trial, first) || model.delay() < leastDelay)
             return false;
-        const std::span<Complex> wanted = jacobian.empty() ? std::span<Complex>{} : std::span<Complex>(derivatives);
+        const std::span<Complex> wanted =
+            jacobian.empty() ? std::span<Complex>{} : std::span<Complex>(derivatives);
         for (std::size_t i = 0; i < rows; ++i) {
             const LoopTarget& target = targetOf(i);
             Complex log = still[i];
-            if (what != Fitted::loss)
+            if (target.beyond) { // the loss alone counts, whatever the line does there
+                log += target.loss;
+                std::fill(derivatives.begin(), derivatives.begin() + static_cast<std::ptrdiff_t>(lossAt),
+                          0.0);
+            } else if (what != Fitted::loss) {
                 log += logLine(model, target.p, target.s, wanted);
+            }
             if (what != Fitted::phase)
                 log += logLoss(model, target.s, wanted.empty() ? wanted : wanted.subspan(lossAt));
             if (i < phaseRows) {
@@ -87,7 +101,7 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
                 for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
                     jacobian[(j - first) * rows + i] = scale * derivatives[j].imag();
             } else {
-                const double scale = lossScale * lossWeight(target, coveredPartial) / target.loss;
+                const double scale = lossScale * lossWeight(target) / target.loss;
                 residuals[i] = scale * log.real();
                 for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
                     jacobian[(j - first) * rows + i] = scale * derivatives[j].real();
@@ -95,11 +109,9 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
         }
         return true;
     };
-    const double cost = minimiseSquares(residualsAt, constants, rows,
-                                        {.iterations = iterations,
-                                         .largestStep = 0.7,
-                                         .smallestImprovement = 1e-3,
-                                         .goodCost = enough});
+    const double cost = minimiseSquares(
+        residualsAt, constants, rows,
+        {.iterations = iterations, .largestStep = 0.7, .smallestImprovement = 1e-3, .goodCost = enough});
     setConstants(model, constants, first);
     return cost;
 }
@@ -122,7 +134,8 @@ bool tuneExactly(LoopModel& model, const LoopTarget& target) {
     std::vector<Complex> derivatives(firstLossConstant(model));
     for (int iteration = 0; iteration < 30; ++iteration) {
         const Complex p(real, imaginary), s = std::tanh(0.5 * p);
-        const Complex miss = logLine(model, p, s, derivatives) + logLoss(model, s) + Complex(0.0, 2.0 * pi * target.turns);
+        const Complex miss =
+            logLine(model, p, s, derivatives) + logLoss(model, s) + Complex(0.0, 2.0 * pi * target.turns);
         const Complex byReal = logLoopSlope(model, s), byDelay = derivatives[0];
         const double determinant = byReal.real() * byDelay.imag() - byReal.imag() * byDelay.real();
         const double realStep = -(miss.real() * byDelay.imag() - miss.imag() * byDelay.real()) / determinant;
@@ -133,7 +146,8 @@ bool tuneExactly(LoopModel& model, const LoopTarget& target) {
         model.thiranDelay += delayStep;
         if (model.delay() < leastDelay || model.thiranDelay <= 0.0)
             return false;
-        if (std::abs(delayStep) < 1e-13 * model.delay() && std::abs(realStep) < 1e-14 + 1e-12 * std::abs(real))
+        if (std::abs(delayStep) < 1e-13 * model.delay() &&
+            std::abs(realStep) < 1e-14 + 1e-12 * std::abs(real))
             return true;
     }
     return true;
@@ -160,11 +174,12 @@ LoopAccuracy measure(const LoopModel& model, const string::Partials& partials, d
         if (n <= plan.coveredPartial) {
             // NaN must not pass for small.
             if (!(std::abs(error.cents) <= accuracy.worstCents))
-                accuracy.worstCents = std::isnan(error.cents) ? std::numeric_limits<double>::infinity()
-                                                              : std::abs(error.cents);
+                accuracy.worstCents =
+                    std::isnan(error.cents) ? std::numeric_limits<double>::infinity() : std::abs(error.cents);
             const double t60Error = std::abs(error.t60Ratio - 1.0);
             if (target.frequency <= 6000.0 && !(t60Error <= accuracy.worstT60Error))
-                accuracy.worstT60Error = std::isnan(t60Error) ? std::numeric_limits<double>::infinity() : t60Error;
+                accuracy.worstT60Error =
+                    std::isnan(t60Error) ? std::numeric_limits<double>::infinity() : t60Error;
         }
         if (!std::isnan(error.cents)) {
             cents = error.cents;
@@ -182,7 +197,8 @@ std::string shortNumber(double value) {
 
 std::optional<Failure> cannotRun(const string::Partials& partials, const LoopSettings& settings) {
     if (!(settings.sampleRate >= 8000.0 && settings.sampleRate <= 1.0e6))
-        return Failure{"the sample rate is " + shortNumber(settings.sampleRate) + " Hz: must be 8000 to 1000000 Hz"};
+        return Failure{"the sample rate is " + shortNumber(settings.sampleRate) +
+                       " Hz: must be 8000 to 1000000 Hz"};
     const double first = partials.frequency(1.0);
     if (!(first > 0.0 && std::isfinite(first)))
         return Failure{"the string has no first partial (" + shortNumber(first) + " Hz)"};
@@ -193,19 +209,16 @@ std::optional<Failure> cannotRun(const string::Partials& partials, const LoopSet
     return std::nullopt;
 }
 
-/// The last steps, alike for cold and warm starts: whole delay, loss on the damped poles, exact first partial.
-std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partials, const LoopSettings& settings,
-                                 const LoopPlan& plan, const std::vector<LoopTarget>& phase,
-                                 const std::vector<LoopTarget>& loss, int iterations) {
+/// The last steps, alike for cold and warm starts: whole delay, loss on the damped poles, exact first
+/// partial.
+std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partials,
+                                 const LoopSettings& settings, const LoopPlan& plan,
+                                 const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss,
+                                 int iterations) {
     splitDelay(model);
 
-    std::vector<LoopTarget> coveredLoss; // beyond, the loop's delay is not the string's any more
-    for (const LoopTarget& target : loss)
-        if (target.number <= plan.coveredPartial)
-            coveredLoss.push_back(target);
-    if (1 + 2 * model.shelves.size() <= coveredLoss.size())
-        fit(model, phase, coveredLoss, plan.coveredPartial, Fitted::loss, iterations);
-    fit(model, phase, loss, plan.coveredPartial, Fitted::phase, iterations, goodCost(settings, phase));
+    fit(model, phase, loss, Fitted::loss, iterations);
+    fit(model, phase, loss, Fitted::phase, iterations, goodCost(settings, phase));
     splitDelay(model);
     if (!tuneExactly(model, phase.front()))
         return std::nullopt;
@@ -214,11 +227,13 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
     if (accuracy.worstT60Error > goodT60 || accuracy.worstCents > 1.0 ||
         plan.coveredPartial <= 2 * plan.sections + 1) {
         LoopModel joint = model;
-        fit(joint, phase, coveredLoss, plan.coveredPartial, Fitted::both, 2 * iterations);
+        fit(joint, phase, loss, Fitted::both, 2 * iterations);
         splitDelay(joint);
         if (tuneExactly(joint, phase.front())) {
             const LoopAccuracy jointAccuracy = measure(joint, partials, settings.sampleRate, plan);
-            const auto badness = [](const LoopAccuracy& a) { return a.worstCents + 100.0 / percentPerCent * a.worstT60Error; };
+            const auto badness = [](const LoopAccuracy& a) {
+                return a.worstCents + 100.0 / percentPerCent * a.worstT60Error;
+            };
             if (badness(jointAccuracy) < badness(accuracy)) {
                 model = joint;
                 accuracy = jointAccuracy;
@@ -237,6 +252,45 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
     return design;
 }
 
+/// The best fit of the phase from several starts. Where the fits go wrong at all, they go wrong by much: the
+/// search ends with the first that is as good as a string of that kind usually gets.
+std::optional<LoopModel> fitPhase(const LoopModel& lossy, const string::Partials& partials,
+                                  const LoopSettings& settings, const LoopPlan& plan,
+                                  const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss) {
+    const double enough = goodCost(settings, phase), usual = usualRatio * usualRatio * enough;
+    std::optional<LoopModel> best;
+    double bestCost = std::numeric_limits<double>::infinity();
+    for (const double flatness : {0.4, 0.6, 0.5, 0.7}) {
+        LoopModel model = lossy;
+        if (!placeSections(model, partials, settings.sampleRate, plan.coveredPartial, plan.sections,
+                           flatness))
+            continue;
+        // First with a plain delay, which may move far from where the placement put it.
+        if (!std::isfinite(fit(model, phase, loss, Fitted::phase, 100, enough)))
+            continue;
+        // Then with Thiran's section: at the delay found, or as a bare sample, where its phase is straight to
+        // the top and the fit can lead it away from there.
+        for (const bool bareSample : {false, true}) {
+            LoopModel split = model;
+            splitDelay(split);
+            if (bareSample) {
+                split.straightDelay = std::max(1.0, std::round(model.delay()) - 1.0);
+                split.thiranDelay = 1.0;
+            }
+            const double cost = fit(split, phase, loss, Fitted::phase, 100, enough);
+            if (cost < bestCost) {
+                bestCost = cost;
+                best = split;
+            }
+            if (bestCost <= usual)
+                return best;
+        }
+        if (plan.sections == 0)
+            break;
+    }
+    return best;
+}
+
 } // namespace
 
 Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings& settings) {
@@ -246,35 +300,31 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
     const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
     LoopModel lossy;
-    fitLoss(lossy, loss, plan.coveredPartial, shelfCount);
+    fitLoss(lossy, loss, shelfCount);
 
-    const double good = goodCost(settings, phase);
+    // The count planned, then some more where that is not true enough, then fewer: high strings may have no
+    // room for all, since every section takes delay out of the line.
+    std::vector<int> counts;
+    const int most = std::min(mostSections(settings.quality), plan.coveredPartial - 1);
+    for (int count = plan.sections; count <= std::min(plan.sections + 2, most); ++count)
+        counts.push_back(count);
+    for (int count = plan.sections - 1; count >= 0; --count)
+        counts.push_back(count);
 
-    // High strings may have no room for all the sections: every one takes delay out of the line.
-    for (; plan.sections >= 0; --plan.sections) {
-        LoopModel best;
-        double bestCost = std::numeric_limits<double>::infinity();
-        for (const double flatness : {0.4, 0.6}) {
-            LoopModel model = lossy;
-            if (!placeSections(model, partials, settings.sampleRate, plan.coveredPartial, plan.sections, flatness))
-                continue;
-            // First with a plain delay, which may move far from where the placement put it; then with Thiran's.
-            if (!std::isfinite(fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 100, good)))
-                continue;
-            splitDelay(model);
-            const double cost = fit(model, phase, loss, plan.coveredPartial, Fitted::phase, 100, good);
-            if (cost < bestCost) {
-                bestCost = cost;
-                best = model;
-            }
-            if (plan.sections == 0 || bestCost <= good)
-                break;
-        }
-        if (!std::isfinite(bestCost))
+    std::optional<LoopDesign> best;
+    for (const int count : counts) {
+        if (best && (best->accuracy.worstCents <= trueCents || count < plan.sections))
+            break;
+        plan.sections = count;
+        const auto model = fitPhase(lossy, partials, settings, plan, phase, loss);
+        if (!model)
             continue;
-        if (auto design = finish(best, partials, settings, plan, phase, loss, 20))
-            return *std::move(design);
+        auto design = finish(*model, partials, settings, plan, phase, loss, 20);
+        if (design && (!best || design->accuracy.worstCents < best->accuracy.worstCents))
+            best = std::move(design);
     }
+    if (best)
+        return *std::move(best);
     return Failure{"no loop could be fitted to a first partial of " + shortNumber(partials.frequency(1.0)) +
                    " Hz at a sample rate of " + shortNumber(settings.sampleRate) + " Hz"};
 }
@@ -291,11 +341,13 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
         const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
         LoopModel model = modelOf(neighbour);
         // The line takes the change of the period, so that the fit begins near its end.
-        const double change = settings.sampleRate / phase.front().frequency - settings.sampleRate / neighbour.firstPartialHz;
+        const double change =
+            settings.sampleRate / phase.front().frequency - settings.sampleRate / neighbour.firstPartialHz;
         model.straightDelay += change;
         if (model.delay() >= leastDelay) {
             auto design = finish(model, partials, settings, plan, phase, loss, 6);
-            if (design && design->accuracy.worstCents <= std::max(warmCents, 1.2 * neighbour.accuracy.worstCents) &&
+            if (design &&
+                design->accuracy.worstCents <= std::max(warmCents, 1.2 * neighbour.accuracy.worstCents) &&
                 design->accuracy.worstT60Error <= std::max(goodT60, 1.2 * neighbour.accuracy.worstT60Error))
                 return *std::move(design);
         }

@@ -40,9 +40,13 @@ inline LadderForm ladderForm(const AllpassSection& section) noexcept {
             2.0 * std::sqrt(c1 * (1.0 + c0)) / scale};
 }
 
-/// Thiran's first-order allpass (a + z⁻¹)/(1 + a·z⁻¹): a for a delay of `samples` at low frequencies, and back.
-/// Stable for samples > 0; best kept within 0.5…1.5.
-constexpr double thiranCoefficient(double samples) noexcept { return (1.0 - samples) / (1.0 + samples); }
-constexpr double thiranDelay(double coefficient) noexcept { return (1.0 - coefficient) / (1.0 + coefficient); }
+/// Thiran's first-order allpass (a + z⁻¹)/(1 + a·z⁻¹): a for a delay of `samples` at low frequencies, and
+/// back. Stable for samples > 0; best kept within 0.5…1.5.
+constexpr double thiranCoefficient(double samples) noexcept {
+    return (1.0 - samples) / (1.0 + samples);
+}
+constexpr double thiranDelay(double coefficient) noexcept {
+    return (1.0 - coefficient) / (1.0 + coefficient);
+}
 
 } // namespace hitchpin::design
