@@ -37,6 +37,7 @@ constexpr double leastMargin = 1.2;
 LoopTarget targetAt(const string::Partials& partials, double sampleRate, double number) {
     LoopTarget target{};
     target.number = number;
+    target.weight = 1.0;
     target.turns = partials.ends().oneFree() ? number - 0.5 : number;
     target.frequency = partials.frequency(number);
     target.decayRate = partials.decayRate(number);
@@ -63,18 +64,18 @@ LoopPlan planLoop(const string::Partials& partials, const LoopSettings& settings
     const double usable = usableShareOfRate * settings.sampleRate;
 
     LoopPlan plan;
-    double needed = sectionsNeeded(partials, 1.0);
+    plan.needed = sectionsNeeded(partials, 1.0);
     for (int n = 2; n <= aim.mostPartials; ++n) {
         const double frequency = partials.frequency(n);
         if (frequency > usable || (frequency > aim.reachHz && n > aim.leastPartials))
             break;
-        const double more = std::max(needed, sectionsNeeded(partials, n));
+        const double more = std::max(plan.needed, sectionsNeeded(partials, n));
         if (more > aim.mostSections - leastMargin)
             break;
         plan.coveredPartial = n;
-        needed = more;
+        plan.needed = more;
     }
-    plan.sections = std::min(aim.mostSections, static_cast<int>(std::ceil(needed + aim.margin)));
+    plan.sections = std::min(aim.mostSections, static_cast<int>(std::ceil(plan.needed + aim.margin)));
     // Two unknowns a section and the delay must not outnumber the targets at n = 1, 1.5, 2, …
     plan.sections = std::min(plan.sections, plan.coveredPartial - 1);
     return plan;

@@ -29,8 +29,6 @@ constexpr int shelfCount = 3;
 /// A fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02;
 constexpr double goodCentsReference = 0.003;
-/// A fit within so many times the good one is as good as it gets with some strings.
-constexpr double usualRatio = 15.0;
 /// Worst partial of a design that needs no more sections, cents.
 constexpr double trueCents = 1.0;
 /// Losses off by more than this are fitted again together with the phase.
@@ -42,22 +40,42 @@ constexpr double warmCents = 0.8;
 /// The report goes at least this far, also where the fit does not.
 constexpr int leastReported = 64;
 
+/// Thiran's section is most nearly a plain delay around one sample. A fit that leads further away uses it as
+/// one more dispersion section and gets lost.
+constexpr double shortestThiran = 0.5, longestThiran = 1.5;
+
+/// From one fractional delay to whole samples and Thiran's section.
+void splitDelay(LoopModel& model) {
+    const double whole = std::max(1.0, std::floor(model.delay() - shortestThiran));
+    model.thiranDelay = model.delay() - whole;
+    model.straightDelay = whole;
+}
+
+/// Keeps Thiran's delay in its range. True where it had left it.
+bool holdThiran(LoopModel& model) {
+    if (model.thiranDelay <= 0.0)
+        return false;
+    const double asked = model.thiranDelay;
+    model.thiranDelay = std::clamp(asked, shortestThiran, longestThiran);
+    return model.thiranDelay != asked;
+}
+
 double goodCost(const LoopSettings& settings, const std::vector<LoopTarget>& phase) {
     const double cents = settings.quality == Quality::live ? goodCentsLive : goodCentsReference;
     return cents * cents * static_cast<double>(phase.size());
 }
 
-enum class Fitted { phase, loss, both };
+enum class Fitted { sections, phase, loss, both }; // sections: phase with the delay held
 
 /// Moves the model's constants towards the targets' poles. Phase in cents at `phase`, loss in per cent at
 /// `loss`, both at the damped poles. Returns the sum of squares.
 double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss,
            Fitted what, int iterations, double enough = 0.0) {
     const std::size_t lossAt = firstLossConstant(model), count = constantCount(model);
-    const std::size_t first = what == Fitted::loss ? lossAt : 0;
-    const std::size_t end = what == Fitted::phase ? lossAt : count;
-    const std::size_t phaseRows = what == Fitted::loss ? 0 : phase.size();
-    const std::size_t lossRows = what == Fitted::phase ? 0 : loss.size();
+    const bool movesPhase = what != Fitted::loss, movesLoss = what == Fitted::loss || what == Fitted::both;
+    const std::size_t first = what == Fitted::loss ? lossAt : what == Fitted::sections ? 1 : 0;
+    const std::size_t end = movesLoss ? count : lossAt;
+    const std::size_t phaseRows = movesPhase ? phase.size() : 0, lossRows = movesLoss ? loss.size() : 0;
     const std::size_t rows = phaseRows + lossRows;
     const std::vector<double> all = constantsOf(model);
     std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first),
@@ -69,7 +87,7 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
     std::vector<Complex> still(rows);
     for (std::size_t i = 0; i < rows && what != Fitted::both; ++i) {
         const LoopTarget& target = targetOf(i);
-        if (what == Fitted::phase)
+        if (movesPhase)
             still[i] = logLoss(model, target.s);
         else if (!target.beyond)
             still[i] = logLine(model, target.p, target.s);
@@ -79,7 +97,10 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
     const double lossScale = what == Fitted::both ? 100.0 / percentPerCent : 100.0;
     const auto residualsAt = [&](std::span<const double> trial, std::span<double> residuals,
                                  std::span<double> jacobian) {
-        if (!setConstants(model, trial, first) || model.delay() < leastDelay)
+        if (!setConstants(model, trial, first))
+            return false;
+        const bool delayHeld = holdThiran(model);
+        if (model.delay() < leastDelay)
             return false;
         const std::span<Complex> wanted =
             jacobian.empty() ? std::span<Complex>{} : std::span<Complex>(derivatives);
@@ -90,13 +111,13 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
                 log += target.loss;
                 std::fill(derivatives.begin(), derivatives.begin() + static_cast<std::ptrdiff_t>(lossAt),
                           0.0);
-            } else if (what != Fitted::loss) {
+            } else if (movesPhase) {
                 log += logLine(model, target.p, target.s, wanted);
             }
-            if (what != Fitted::phase)
+            if (movesLoss)
                 log += logLoss(model, target.s, wanted.empty() ? wanted : wanted.subspan(lossAt));
             if (i < phaseRows) {
-                const double scale = centsPerNeper / (target.p.imag() * target.groupDelay);
+                const double scale = target.weight * centsPerNeper / (target.p.imag() * target.groupDelay);
                 residuals[i] = scale * (log.imag() + 2.0 * pi * target.turns);
                 for (std::size_t j = first; j < end && !jacobian.empty(); ++j)
                     jacobian[(j - first) * rows + i] = scale * derivatives[j].imag();
@@ -107,23 +128,16 @@ double fit(LoopModel& model, const std::vector<LoopTarget>& phase, const std::ve
                     jacobian[(j - first) * rows + i] = scale * derivatives[j].real();
             }
         }
+        if (delayHeld && first == 0 && !jacobian.empty())
+            std::fill_n(jacobian.begin(), rows, 0.0);
         return true;
     };
     const double cost = minimiseSquares(
         residualsAt, constants, rows,
         {.iterations = iterations, .largestStep = 0.7, .smallestImprovement = 1e-3, .goodCost = enough});
     setConstants(model, constants, first);
+    holdThiran(model);
     return cost;
-}
-
-/// From one fractional delay to whole samples and Thiran's section with 0.5 ≤ d < 1.5. A fit that moved d a
-/// little out of that range is left alone: it has Thiran's phase at that d in it.
-void splitDelay(LoopModel& model) {
-    if (model.thiranDelay > 0.3 && model.thiranDelay < 2.0)
-        return;
-    const double whole = std::max(1.0, std::floor(model.delay() - 0.5));
-    model.thiranDelay = model.delay() - whole;
-    model.straightDelay = whole;
 }
 
 /// Sets the delay so that the loop's own pole has exactly the frequency of the target: Newton for the pole's
@@ -241,6 +255,34 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
         }
     }
 
+    // Where the sections hardly suffice, the error is spread evenly: what is worst counts more, round by
+    // round.
+    if (accuracy.worstCents > trueCents && !phase.empty()) {
+        std::vector<LoopTarget> weighted = phase;
+        LoopModel even = model;
+        for (int round = 0; round < 4; ++round) {
+            double sum = 0.0;
+            std::vector<double> miss;
+            for (const LoopTarget& target : weighted) {
+                const Complex log = logLine(even, target.p, target.s) + logLoss(even, target.s);
+                miss.push_back(std::abs(log.imag() + 2.0 * pi * target.turns) /
+                               (target.p.imag() * target.groupDelay));
+                sum += miss.back() * miss.back();
+            }
+            const double mean = std::sqrt(sum / static_cast<double>(miss.size()));
+            for (std::size_t i = 0; i < miss.size(); ++i)
+                weighted[i].weight *= std::sqrt(std::clamp(miss[i] / mean, 0.5, 4.0));
+            fit(even, weighted, loss, Fitted::phase, iterations);
+            if (!tuneExactly(even, phase.front()))
+                break;
+            LoopAccuracy evenAccuracy = measure(even, partials, settings.sampleRate, plan);
+            if (evenAccuracy.worstCents < accuracy.worstCents) {
+                model = even;
+                accuracy = std::move(evenAccuracy);
+            }
+        }
+    }
+
     LoopDesign design = designOf(model);
     design.sampleRate = settings.sampleRate;
     design.firstPartialHz = phase.front().frequency;
@@ -252,37 +294,61 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
     return design;
 }
 
-/// The best fit of the phase from several starts. Where the fits go wrong at all, they go wrong by much: the
-/// search ends with the first that is as good as a string of that kind usually gets.
+/// What a good fit of a string ends at (root mean square, cents), by the sections it has beyond X(n). Where
+/// fits go wrong they go wrong by much more.
+double usualCents(const LoopPlan& plan) {
+    const double spare = plan.sections - plan.needed;
+    return std::max(0.01, 0.35 * std::pow(10.0, 0.4 * (1.2 - spare)));
+}
+
+/// The best fit of the phase from several starts.
 std::optional<LoopModel> fitPhase(const LoopModel& lossy, const string::Partials& partials,
                                   const LoopSettings& settings, const LoopPlan& plan,
                                   const std::vector<LoopTarget>& phase, const std::vector<LoopTarget>& loss) {
-    const double enough = goodCost(settings, phase), usual = usualRatio * usualRatio * enough;
+    const double enough = goodCost(settings, phase);
+    const double usual = usualCents(plan) * usualCents(plan) * static_cast<double>(phase.size());
     std::optional<LoopModel> best;
     double bestCost = std::numeric_limits<double>::infinity();
+    const auto keep = [&](const LoopModel& model, double cost) {
+        if (cost < bestCost) {
+            bestCost = cost;
+            best = model;
+        }
+        return bestCost <= usual;
+    };
+    std::vector<double> endsSeen;
     for (const double flatness : {0.4, 0.6, 0.5, 0.7}) {
         LoopModel model = lossy;
         if (!placeSections(model, partials, settings.sampleRate, plan.coveredPartial, plan.sections,
                            flatness))
             continue;
         // First with a plain delay, which may move far from where the placement put it.
-        if (!std::isfinite(fit(model, phase, loss, Fitted::phase, 100, enough)))
+        const double plainCost = fit(model, phase, loss, Fitted::phase, 100, enough);
+        const auto sameEnd = [&](double seen) { return std::abs(plainCost / seen - 1.0) < 0.02; };
+        if (!std::isfinite(plainCost) || std::any_of(endsSeen.begin(), endsSeen.end(), sameEnd))
             continue;
-        // Then with Thiran's section: at the delay found, or as a bare sample, where its phase is straight to
-        // the top and the fit can lead it away from there.
-        for (const bool bareSample : {false, true}) {
-            LoopModel split = model;
-            splitDelay(split);
-            if (bareSample) {
-                split.straightDelay = std::max(1.0, std::round(model.delay()) - 1.0);
-                split.thiranDelay = 1.0;
-            }
-            const double cost = fit(split, phase, loss, Fitted::phase, 100, enough);
-            if (cost < bestCost) {
-                bestCost = cost;
-                best = split;
-            }
-            if (bestCost <= usual)
+        endsSeen.push_back(plainCost);
+
+        // Then with Thiran's section at the delay found…
+        LoopModel split = model;
+        splitDelay(split);
+        if (keep(split, fit(split, phase, loss, Fitted::phase, 100, enough)))
+            return best;
+        // …and, where it was pulled to the end of its range, with one sample more or less in the line,
+        // starting from a bare sample, whose phase is straight to the top, once the sections have taken up
+        // the rest.
+        for (int further = 0; further < 3; ++further) {
+            const double direction = split.thiranDelay > longestThiran - 0.01    ? 1.0
+                                     : split.thiranDelay < shortestThiran + 0.01 ? -1.0
+                                                                                 : 0.0;
+            const double line = split.straightDelay + direction;
+            if (direction == 0.0 || line < 1.0)
+                break;
+            split = model;
+            split.straightDelay = line;
+            split.thiranDelay = 1.0;
+            fit(split, phase, loss, Fitted::sections, 50, enough);
+            if (keep(split, fit(split, phase, loss, Fitted::phase, 100, enough)))
                 return best;
         }
         if (plan.sections == 0)
