@@ -69,7 +69,7 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
 double lossWeight(const LoopTarget& target) {
     if (target.beyond)
         return 0.2;
-    return target.frequency <= 6000.0 ? 1.0 : 0.5;
+    return target.frequency <= 6000.0 ? 1.0 : 0.3;
 }
 
 void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int shelfCount) {

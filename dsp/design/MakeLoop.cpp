@@ -25,7 +25,7 @@ constexpr double centsPerNeper = 1200.0 / std::numbers::ln2;
 constexpr double highestFirstPartial = 0.4;
 /// One sample for the line and half a one for Thiran's section.
 constexpr double leastDelay = 1.5;
-constexpr int shelfCount = 3;
+constexpr int liveShelves = 3, referenceShelves = 4;
 /// A fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02;
 constexpr double goodCentsReference = 0.003;
@@ -63,6 +63,26 @@ bool holdThiran(LoopModel& model) {
 double goodCost(const LoopSettings& settings, const std::vector<LoopTarget>& phase) {
     const double cents = settings.quality == Quality::live ? goodCentsLive : goodCentsReference;
     return cents * cents * static_cast<double>(phase.size());
+}
+
+/// The same loop with everything in it moved to `ratio` times its frequency; the fraction of the delay stays near
+/// where it was.
+LoopModel scaled(LoopModel model, double ratio) {
+    for (AllpassSection& section : model.sections) {
+        section.c0 *= ratio * ratio;
+        section.c1 *= ratio;
+    }
+    for (ShelfModel& shelf : model.shelves)
+        shelf.corner *= ratio;
+    const double delay = model.delay() / ratio;
+    double line = std::max(1.0, std::round(delay - model.thiranDelay));
+    if (delay - line < shortestThiran && line > 1.0)
+        line -= 1.0;
+    else if (delay - line > longestThiran)
+        line += 1.0;
+    model.straightDelay = line;
+    model.thiranDelay = delay - line;
+    return model;
 }
 
 enum class Fitted { sections, phase, loss, both }; // sections: phase with the delay held
@@ -223,6 +243,20 @@ std::optional<Failure> cannotRun(const string::Partials& partials, const LoopSet
     return std::nullopt;
 }
 
+/// The design of a finished model; none where it is not sound.
+std::optional<LoopDesign> completed(const LoopModel& model, LoopAccuracy accuracy, const string::Partials& partials,
+                                    const LoopSettings& settings) {
+    LoopDesign design = designOf(model);
+    design.sampleRate = settings.sampleRate;
+    design.firstPartialHz = partials.frequency(1.0);
+    design.turn = partials.ends().oneFree() ? -1.0 : 1.0;
+    design.accuracy = std::move(accuracy);
+    design.accuracy.peakLoopGain = peakGain(design);
+    if (!std::isfinite(design.accuracy.worstCents) || !(design.accuracy.peakLoopGain < 1.0))
+        return std::nullopt;
+    return design;
+}
+
 /// The last steps, alike for cold and warm starts: whole delay, loss on the damped poles, exact first
 /// partial.
 std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partials,
@@ -260,7 +294,7 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
     if (accuracy.worstCents > trueCents && !phase.empty()) {
         std::vector<LoopTarget> weighted = phase;
         LoopModel even = model;
-        for (int round = 0; round < 4; ++round) {
+        for (int round = 0; round < 4 && accuracy.worstCents > trueCents; ++round) {
             double sum = 0.0;
             std::vector<double> miss;
             for (const LoopTarget& target : weighted) {
@@ -283,15 +317,7 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
         }
     }
 
-    LoopDesign design = designOf(model);
-    design.sampleRate = settings.sampleRate;
-    design.firstPartialHz = phase.front().frequency;
-    design.turn = partials.ends().oneFree() ? -1.0 : 1.0;
-    design.accuracy = std::move(accuracy);
-    design.accuracy.peakLoopGain = peakGain(design);
-    if (!std::isfinite(design.accuracy.worstCents) || !(design.accuracy.peakLoopGain < 1.0))
-        return std::nullopt;
-    return design;
+    return completed(model, std::move(accuracy), partials, settings);
 }
 
 /// What a good fit of a string ends at (root mean square, cents), by the sections it has beyond X(n). Where
@@ -366,7 +392,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
     const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
     LoopModel lossy;
-    fitLoss(lossy, loss, shelfCount);
+    fitLoss(lossy, loss, settings.quality == Quality::live ? liveShelves : referenceShelves);
 
     // The count planned, then some more where that is not true enough, then fewer: high strings may have no
     // room for all, since every section takes delay out of the line.
@@ -405,17 +431,21 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
     if (sameKind && plan.sections == static_cast<int>(neighbour.sections.size())) {
         const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
         const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
-        LoopModel model = modelOf(neighbour);
-        // The line takes the change of the period, so that the fit begins near its end.
-        const double change =
-            settings.sampleRate / phase.front().frequency - settings.sampleRate / neighbour.firstPartialHz;
-        model.straightDelay += change;
-        if (model.delay() >= leastDelay) {
-            auto design = finish(model, partials, settings, plan, phase, loss, 6);
-            if (design &&
-                design->accuracy.worstCents <= std::max(warmCents, 1.2 * neighbour.accuracy.worstCents) &&
-                design->accuracy.worstT60Error <= std::max(goodT60, 1.2 * neighbour.accuracy.worstT60Error))
+        const auto trueEnough = [&](const LoopAccuracy& accuracy, double slack) {
+            return accuracy.worstCents <= std::max(warmCents, slack * neighbour.accuracy.worstCents) &&
+                   accuracy.worstT60Error <= std::max(goodT60, slack * neighbour.accuracy.worstT60Error);
+        };
+        LoopModel model = scaled(modelOf(neighbour), phase.front().frequency / neighbour.firstPartialHz);
+        if (model.delay() >= leastDelay && tuneExactly(model, phase.front())) {
+            // Another tension changes every partial alike, and the loop is ready as it stands.
+            LoopAccuracy accuracy = measure(model, partials, settings.sampleRate, plan);
+            if (!trueEnough(accuracy, 1.05)) {
+                if (auto design = finish(model, partials, settings, plan, phase, loss, 6);
+                    design && trueEnough(design->accuracy, 1.2))
+                    return *std::move(design);
+            } else if (auto design = completed(model, std::move(accuracy), partials, settings)) {
                 return *std::move(design);
+            }
         }
     }
     return makeLoop(partials, settings);
