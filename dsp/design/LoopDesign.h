@@ -23,26 +23,26 @@ struct LoopAccuracy {
     struct PartialError {
         int number;
         double targetHz;
-        double cents;       ///< sounding against target
-        double t60Ratio;    ///< sounding over target
+        double cents;    ///< sounding against target
+        double t60Ratio; ///< sounding over target
     };
     std::vector<PartialError> partials;
-    double worstCents = 0.0;        ///< over the covered partials
-    double worstT60Error = 0.0;     ///< |ratio − 1| over the covered partials up to 6 kHz
-    double coverageHz = 0.0;        ///< up to which the design was made to be true
+    double worstCents = 0.0;    ///< over the covered partials
+    double worstT60Error = 0.0; ///< |ratio − 1| over the covered partials up to 6 kHz
+    double coverageHz = 0.0;    ///< up to which the design was made to be true
     int coveragePartial = 0;
-    double peakLoopGain = 0.0;      ///< over a dense grid of frequencies
+    double peakLoopGain = 0.0; ///< over a dense grid of frequencies
 };
 
-/// L(z) = turn · gain · ∏shelves · ∏sections · thiran · z^(−delay): once round the string. `turn` is +1 between
-/// two ends of the same kind and −1 where one of them is free.
+/// L(z) = turn · gain · ∏shelves · ∏sections · thiran · z^(−delay): once round the string. `turn` is +1
+/// between two ends of the same kind and −1 where one of them is free.
 struct LoopDesign {
-    double sampleRate = 0.0;  ///< Hz
+    double sampleRate = 0.0; ///< Hz
     double firstPartialHz = 0.0;
     double turn = 1.0;
-    int delay = 1;            ///< whole samples, at least 1
-    double thiran = 0.0;      ///< a in (a + z⁻¹)/(1 + a·z⁻¹)
-    double gain = 1.0;        ///< under 1
+    int delay = 1;       ///< whole samples, at least 1
+    double thiran = 0.0; ///< a in (a + z⁻¹)/(1 + a·z⁻¹)
+    double gain = 1.0;   ///< under 1
     std::vector<LossShelf> shelves;
     std::vector<AllpassSection> sections;
     LoopAccuracy accuracy;

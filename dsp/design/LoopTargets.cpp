@@ -18,6 +18,9 @@ constexpr double hearing = 20000.0;
 /// ratio.
 constexpr double leastLoss = 1e-9;
 
+/// Nepers a round: what dies faster is gone within a few periods, and no shelf needs to say how fast.
+constexpr double mostLoss = 1.0;
+
 struct Ambition {
     double reachHz;    ///< partials are followed up to here…
     int mostPartials;  ///< …or to this one
@@ -103,6 +106,8 @@ std::vector<LoopTarget> lossTargets(const string::Partials& partials, double sam
         beyond.s = {0.0, std::tan(0.5 * beyond.p.imag())};
         beyond.groupDelay = std::max(beyond.groupDelay, lastDelay);
         beyond.loss = beyond.decayRate * beyond.groupDelay / sampleRate;
+        if (beyond.loss > mostLoss)
+            break;
         targets.push_back(beyond);
     }
     return targets;

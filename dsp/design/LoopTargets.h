@@ -17,7 +17,7 @@ struct LoopTarget {
     std::complex<double> s; ///< tanh(p/2), the bilinear variable there
     double groupDelay;      ///< samples, fs·dn/df
     double loss;            ///< nepers once round, σ·dn/df
-    double weight;           ///< how much its phase counts
+    double weight;          ///< how much it counts in a fit
     bool beyond;            ///< higher than the covered partials: for the loss alone, on the unit circle
 };
 
@@ -30,7 +30,7 @@ double sectionsNeeded(const string::Partials&, double number);
 
 /// How far and with how many sections a loop is fitted.
 struct LoopPlan {
-    double needed = 0.0;     ///< X at the covered partial
+    double needed = 0.0; ///< X at the covered partial
     int sections = 0;
     int coveredPartial = 1; ///< the highest that the fit follows
 };

@@ -10,8 +10,9 @@ namespace hitchpin::design {
 
 namespace {
 
-/// Good enough to stop adding shelves: root mean square error of the loss, per cent.
-constexpr double goodPercent = 0.05;
+constexpr std::size_t mostShelves = 4;
+/// Worst error of a fit that is good as it is.
+constexpr double poorPercent = 2.0;
 
 struct LossPoint {
     double x2; ///< tan²(ω/2)
@@ -69,10 +70,10 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
 double lossWeight(const LoopTarget& target) {
     if (target.beyond)
         return 0.2;
-    return target.frequency <= 6000.0 ? 1.0 : 0.3;
+    return target.weight * (target.frequency <= 6000.0 ? 1.0 : 0.3);
 }
 
-void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int shelfCount) {
+void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPercent) {
     std::vector<LossPoint> points;
     double least = std::numeric_limits<double>::infinity(), most = 0.0;
     for (const LoopTarget& target : targets) {
@@ -91,9 +92,8 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int shelf
     double cost = refine(model, points, 20);
     const double lowest = std::sqrt(points.front().x2),
                  highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
-    for (int shelf = 0;
-         shelf < shelfCount && cost > good && 1 + 2 * (shelf + 1) <= static_cast<int>(points.size());
-         ++shelf) {
+    while (cost > good && model.shelves.size() < mostShelves &&
+           1 + 2 * (model.shelves.size() + 1) <= points.size()) {
         constexpr int corners = 8;
         LoopModel best;
         double bestCost = std::numeric_limits<double>::infinity();
@@ -114,6 +114,31 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, int shelf
             break;
         cost = refined;
         model = best;
+    }
+
+    // Where that leaves much, it is spread evenly: what is worst counts more, round by round.
+    for (int round = 0; round < 3; ++round) {
+        std::vector<double> miss;
+        double worst = 0.0;
+        for (std::size_t i = 0; i < points.size(); ++i) {
+            double sum = model.loss;
+            for (const ShelfModel& shelf : model.shelves)
+                sum += shelfLoss(shelf, points[i].x2).loss;
+            miss.push_back(std::abs(sum / points[i].loss - 1.0) * lossWeight(targets[i]) / targets[i].weight);
+            worst = std::max(worst, miss.back());
+        }
+        if (worst < 0.01 * poorPercent)
+            break;
+        double mean = 0.0;
+        for (const double m : miss)
+            mean += m * m / static_cast<double>(miss.size());
+        for (std::size_t i = 0; i < points.size(); ++i) {
+            const double raised =
+                targets[i].weight * std::sqrt(std::clamp(miss[i] / std::sqrt(mean), 0.5, 4.0));
+            targets[i].weight = std::clamp(raised, 0.7, 2.5);
+            points[i].weight = lossWeight(targets[i]);
+        }
+        refine(model, points, 20);
     }
 }
 

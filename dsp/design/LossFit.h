@@ -9,8 +9,9 @@ namespace hitchpin::design {
 /// How much a loss target counts: fully up to 6 kHz, less above, and least beyond the covered partials.
 double lossWeight(const LoopTarget&);
 
-/// Sets the model's loss and up to `shelfCount` shelves so that −ln|H| on the unit circle meets the targets
-/// in ratio: greedy, each new shelf the best of several corners of both kinds, all refined together.
-void fitLoss(LoopModel&, const std::vector<LoopTarget>&, int shelfCount);
+/// Sets the model's loss and as few shelves (at most four) as meet the targets in ratio on the unit circle,
+/// within `goodPercent` root mean square: greedy, each new shelf the best of several corners of both kinds,
+/// all refined together. Changes the weights of the targets so that those that are hard to meet count more.
+void fitLoss(LoopModel&, std::vector<LoopTarget>&, double goodPercent);
 
 } // namespace hitchpin::design

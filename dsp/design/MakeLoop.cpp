@@ -25,7 +25,8 @@ constexpr double centsPerNeper = 1200.0 / std::numbers::ln2;
 constexpr double highestFirstPartial = 0.4;
 /// One sample for the line and half a one for Thiran's section.
 constexpr double leastDelay = 1.5;
-constexpr int liveShelves = 3, referenceShelves = 4;
+/// A loss fit this good (root mean square, per cent) needs no more shelves.
+constexpr double goodLossLive = 0.7, goodLossReference = 0.1;
 /// A fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02;
 constexpr double goodCentsReference = 0.003;
@@ -35,8 +36,6 @@ constexpr double trueCents = 1.0;
 constexpr double goodT60 = 0.03;
 /// In a fit of both, so many per cent of T60 weigh as much as a cent.
 constexpr double percentPerCent = 3.0;
-/// A warm start that ends worse than this asks for a design from the beginning.
-constexpr double warmCents = 0.8;
 /// The report goes at least this far, also where the fit does not.
 constexpr int leastReported = 64;
 
@@ -65,8 +64,8 @@ double goodCost(const LoopSettings& settings, const std::vector<LoopTarget>& pha
     return cents * cents * static_cast<double>(phase.size());
 }
 
-/// The same loop with everything in it moved to `ratio` times its frequency; the fraction of the delay stays near
-/// where it was.
+/// The same loop with everything in it moved to `ratio` times its frequency; the fraction of the delay stays
+/// near where it was.
 LoopModel scaled(LoopModel model, double ratio) {
     for (AllpassSection& section : model.sections) {
         section.c0 *= ratio * ratio;
@@ -244,8 +243,8 @@ std::optional<Failure> cannotRun(const string::Partials& partials, const LoopSet
 }
 
 /// The design of a finished model; none where it is not sound.
-std::optional<LoopDesign> completed(const LoopModel& model, LoopAccuracy accuracy, const string::Partials& partials,
-                                    const LoopSettings& settings) {
+std::optional<LoopDesign> completed(const LoopModel& model, LoopAccuracy accuracy,
+                                    const string::Partials& partials, const LoopSettings& settings) {
     LoopDesign design = designOf(model);
     design.sampleRate = settings.sampleRate;
     design.firstPartialHz = partials.frequency(1.0);
@@ -390,9 +389,9 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
         return *failure;
     LoopPlan plan = planLoop(partials, settings);
     const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
-    const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
+    auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
     LoopModel lossy;
-    fitLoss(lossy, loss, settings.quality == Quality::live ? liveShelves : referenceShelves);
+    fitLoss(lossy, loss, settings.quality == Quality::live ? goodLossLive : goodLossReference);
 
     // The count planned, then some more where that is not true enough, then fewer: high strings may have no
     // room for all, since every section takes delay out of the line.
@@ -431,17 +430,19 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
     if (sameKind && plan.sections == static_cast<int>(neighbour.sections.size())) {
         const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
         const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
-        const auto trueEnough = [&](const LoopAccuracy& accuracy, double slack) {
-            return accuracy.worstCents <= std::max(warmCents, slack * neighbour.accuracy.worstCents) &&
-                   accuracy.worstT60Error <= std::max(goodT60, slack * neighbour.accuracy.worstT60Error);
+        // As true as the neighbour, within so much more of its error.
+        const auto trueEnough = [&](const LoopAccuracy& accuracy, double more) {
+            const LoopAccuracy& known = neighbour.accuracy;
+            return accuracy.worstCents <= (1.0 + more) * known.worstCents + 0.2 * more &&
+                   accuracy.worstT60Error <= (1.0 + more) * known.worstT60Error + 0.02 * more;
         };
         LoopModel model = scaled(modelOf(neighbour), phase.front().frequency / neighbour.firstPartialHz);
         if (model.delay() >= leastDelay && tuneExactly(model, phase.front())) {
             // Another tension changes every partial alike, and the loop is ready as it stands.
             LoopAccuracy accuracy = measure(model, partials, settings.sampleRate, plan);
-            if (!trueEnough(accuracy, 1.05)) {
+            if (!trueEnough(accuracy, 0.2)) {
                 if (auto design = finish(model, partials, settings, plan, phase, loss, 6);
-                    design && trueEnough(design->accuracy, 1.2))
+                    design && trueEnough(design->accuracy, 0.5))
                     return *std::move(design);
             } else if (auto design = completed(model, std::move(accuracy), partials, settings)) {
                 return *std::move(design);
