@@ -23,6 +23,8 @@ double minimiseSquares(const ResidualFunction& residualsAt, std::vector<double>&
     double cost = residuals.squaredNorm();
     if (!std::isfinite(cost))
         return std::numeric_limits<double>::infinity();
+    if (rows == 0 || columns == 0)
+        return cost;
 
     double damping = 1e-3;
     int poorSteps = 0;

@@ -10,8 +10,11 @@ namespace {
 
 constexpr double pi = std::numbers::pi;
 
-/// Share of the sample rate up to which partials are looked after at all.
+/// Shares of the sample rate up to which partials are followed, and up to which their decay is looked after.
+constexpr double coveredShareOfRate = 0.42;
 constexpr double usableShareOfRate = 0.45;
+/// Hz: above this not even the first partials of a high string need to be true.
+constexpr double highestWanted = 17000.0;
 /// Hz: what rings higher is not heard.
 constexpr double hearing = 20000.0;
 /// A loss this small (nepers a round) rings for days; it stands in for none, which could not be fitted in
@@ -64,13 +67,14 @@ int mostSections(Quality quality) {
 
 LoopPlan planLoop(const string::Partials& partials, const LoopSettings& settings) {
     const Ambition& aim = settings.quality == Quality::live ? live : reference;
-    const double usable = usableShareOfRate * settings.sampleRate;
+    const double highest = coveredShareOfRate * settings.sampleRate;
 
     LoopPlan plan;
     plan.needed = sectionsNeeded(partials, 1.0);
     for (int n = 2; n <= aim.mostPartials; ++n) {
         const double frequency = partials.frequency(n);
-        if (frequency > usable || (frequency > aim.reachHz && n > aim.leastPartials))
+        const bool wanted = n <= aim.leastPartials ? frequency <= highestWanted : frequency <= aim.reachHz;
+        if (frequency > highest || !wanted)
             break;
         const double more = std::max(plan.needed, sectionsNeeded(partials, n));
         if (more > aim.mostSections - leastMargin)

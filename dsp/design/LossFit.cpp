@@ -75,12 +75,11 @@ double lossWeight(const LoopTarget& target) {
 
 void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPercent) {
     std::vector<LossPoint> points;
-    double least = std::numeric_limits<double>::infinity(), most = 0.0;
+    double least = std::numeric_limits<double>::infinity();
     for (const LoopTarget& target : targets) {
         const double x = std::tan(0.5 * target.p.imag());
         points.push_back({x * x, target.loss, lossWeight(target)});
         least = std::min(least, target.loss);
-        most = std::max(most, target.loss);
     }
     std::vector<LossPoint> few; // to judge candidates by
     for (std::size_t i = 0; i < points.size(); i += i < 8 ? 1 : 1 + points.size() / 16)
@@ -101,7 +100,10 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
             for (const auto loses : {ShelfModel::Loses::high, ShelfModel::Loses::low}) {
                 LoopModel candidate = model;
                 const double corner = lowest * std::pow(highest / lowest, (i + 0.5) / corners);
-                candidate.shelves.push_back({loses, corner, std::max(0.3 * (most - least), 0.05 * most)});
+                // As deep as what is to be lost at its corner.
+                const auto there = std::find_if(points.begin(), points.end() - 1,
+                                                [&](const LossPoint& point) { return point.x2 >= corner * corner; });
+                candidate.shelves.push_back({loses, corner, there->loss});
                 const double candidateCost = refine(candidate, few, 8);
                 if (candidateCost < bestCost) {
                     bestCost = candidateCost;
