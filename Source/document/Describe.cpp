@@ -1,0 +1,297 @@
+// From the workshop's units to physics: pitch, tension, climate, bridges, the hand.
+#include "Source/document/Document.h"
+
+#include "Source/document/NotHeardYet.h"
+#include "Source/document/Rules.h"
+#include "Source/document/Strung.h"
+#include "dsp/tuning/Notes.h"
+
+#include <algorithm>
+#include <cmath>
+#include <map>
+#include <numbers>
+
+namespace hitchpin::document {
+
+namespace {
+
+constexpr double tunedAtC = 20.0;
+/// The stretch needs the strings' inharmonicity and moves it in turn, by some parts in ten thousand.
+constexpr int stretchRounds = 3;
+
+double ratio(double cents) { return std::exp2(cents / 1200.0); }
+double radians(double degrees) { return degrees * std::numbers::pi / 180.0; }
+
+/// B over the compass: geometric between the notes that have strings, level beyond them.
+class InharmonicityCurve {
+public:
+    void add(int note, double b) { logB_[note] = std::log(std::max(b, 1e-9)); }
+    double operator()(int note) const {
+        if (logB_.empty())
+            return 0.0;
+        const auto above = logB_.lower_bound(note);
+        if (above == logB_.end())
+            return std::exp(logB_.rbegin()->second);
+        if (above->first == note || above == logB_.begin())
+            return std::exp(above->second);
+        const auto below = std::prev(above);
+        const double t = double(note - below->first) / double(above->first - below->first);
+        return std::exp(std::lerp(below->second, above->second, t));
+    }
+
+private:
+    std::map<int, double> logB_;
+};
+
+class Describing {
+public:
+    Describing(const Instrument& instrument, const Adjustments& adjustments)
+        : instrument_(instrument), adjustments_(adjustments), tuning_(unstretched()) {}
+
+    Result<Described, Problems> describe() {
+        // Only a document that was edited since it was read can break a rule here.
+        if (auto broken = brokenRules(instrument_); !broken.empty())
+            return broken;
+        described_.instrument.name = instrument_.name;
+        bridges();
+        stretch();
+        auto courses = strungCourses();
+        if (!problems_.empty())
+            return std::move(problems_);
+        if (instrument_.playing.notes == Notes::everyKeyStrung)
+            courses = withMissingKeys(std::move(courses));
+        for (const auto& course : courses)
+            this->course(course);
+        if (!problems_.empty())
+            return std::move(problems_);
+        rules();
+        described_.notHeardYet = notHeardYet(instrument_);
+        return std::move(described_);
+    }
+
+private:
+    /// A course of the file or between two of them, and the key it answers to.
+    struct Placed {
+        Course course;
+        std::string path;
+        int key;
+        int bridge;
+        double position;
+    };
+
+    tuning::Tuning unstretched() const {
+        const auto& tuning = instrument_.tuning;
+        const auto* temperament = tuning::findTemperament(tuning.temperament);
+        const auto root = tuning::pitchClass(tuning.root);
+        static const auto& equal = tuning::builtInTemperaments().front();
+        return {tuning.a4Hz, temperament != nullptr ? *temperament : equal, root.value_or(0), tuning.offsetsCents};
+    }
+
+    template <class T>
+    std::optional<T> got(Result<T> result, const std::string& path) {
+        if (result)
+            return std::move(result).value();
+        problems_.push_back({path, path + ": " + result.error().message});
+        return std::nullopt;
+    }
+
+    void bridges() {
+        auto all = instrument_.bridges;
+        if (all.empty())
+            all.emplace_back();
+        for (const auto& from : all) {
+            design::BridgeDescription to;
+            to.name = from.name;
+            to.kind = static_cast<design::BridgeKind>(from.kind);
+            to.points = from.points;
+            to.resistance = from.kind == BridgeKind::rigid ? 0.0 : from.resistanceKgS;
+            for (const auto& mode : from.modes)
+                to.modes.push_back({mode.frequencyHz, mode.q, mode.massKg, radians(mode.angleDeg),
+                                    mode.shape.empty() ? std::vector<double>(static_cast<std::size_t>(from.points), 1.0)
+                                                       : mode.shape,
+                                    mode.pan});
+            described_.instrument.bridges.push_back(std::move(to));
+        }
+    }
+
+    int bridgeOf(const Course& course) const {
+        const auto& all = described_.instrument.bridges;
+        const auto found = std::find_if(all.begin(), all.end(), [&](const auto& b) { return b.name == course.bridge; });
+        return found == all.end() ? 0 : static_cast<int>(found - all.begin());
+    }
+
+    void stretch() {
+        const auto kind = static_cast<tuning::Stretch>(instrument_.tuning.stretch);
+        if (kind == tuning::Stretch::none)
+            return;
+        for (int round = 0; round < stretchRounds; ++round) {
+            InharmonicityCurve curve;
+            for (const auto& course : instrument_.courses)
+                if (const auto note = noteOf(course))
+                    if (const auto strung = tuned(stringOf(course, 0), 0.0, tuning_, instrument_, fewPartials))
+                        curve.add(*note, strung->statics.inharmonicity);
+            tuning_ = unstretched().stretched(kind, std::cref(curve));
+        }
+    }
+
+    int nearestKey(double hz) const {
+        int best = 0;
+        for (int note = 1; note < 128; ++note)
+            if (std::abs(std::log(hz / tuning_.frequency(note))) < std::abs(std::log(hz / tuning_.frequency(best))))
+                best = note;
+        return best;
+    }
+
+    std::vector<Placed> strungCourses() {
+        std::vector<int> ofBridge(described_.instrument.bridges.size(), 0);
+        for (const auto& course : instrument_.courses)
+            ++ofBridge[static_cast<std::size_t>(bridgeOf(course))];
+        std::vector<int> placed(ofBridge.size(), 0);
+        std::vector<Placed> all;
+        for (std::size_t i = 0; i < instrument_.courses.size(); ++i) {
+            const auto& course = instrument_.courses[i];
+            const auto path = "courses[" + std::to_string(i) + "]";
+            const int bridge = bridgeOf(course);
+            const auto b = static_cast<std::size_t>(bridge);
+            const double evenly = (placed[b]++ + 0.5) / ofBridge[b];
+            int key = 0;
+            if (const auto note = noteOf(course))
+                key = *note;
+            else if (course.pitchHz)
+                key = nearestKey(*course.pitchHz * ratio(course.cents));
+            else if (const auto strung = got(tuned(course, 0.0, tuning_, instrument_, fewPartials), path))
+                key = nearestKey(strung->partials.frequency(1));
+            all.push_back({course, path, key, bridge, course.bridgePosition.value_or(evenly)});
+        }
+        return all;
+    }
+
+    /// A course for every key between the lowest and the highest, from its neighbours.
+    std::vector<Placed> withMissingKeys(std::vector<Placed> given) const {
+        std::stable_sort(given.begin(), given.end(), [](const auto& a, const auto& b) { return a.key < b.key; });
+        std::vector<Placed> all;
+        for (std::size_t i = 0; i < given.size(); ++i) {
+            all.push_back(given[i]);
+            if (i + 1 == given.size())
+                break;
+            const auto &low = given[i], &high = given[i + 1];
+            for (int key = low.key + 1; key < high.key; ++key) {
+                const double t = double(key - low.key) / double(high.key - low.key);
+                const auto& nearer = t < 0.5 ? low : high;
+                auto between = strungBetween(low.course, high.course, t, instrument_);
+                between.note = tuning::noteName(key);
+                const auto path = "the course for " + *between.note + " between " + low.path + " and " + high.path;
+                all.push_back({std::move(between), path, key, nearer.bridge,
+                               low.bridge == high.bridge ? std::lerp(low.position, high.position, t) : nearer.position});
+            }
+        }
+        return all;
+    }
+
+    /// What may be turned without touching the document acts on the tuned string, the climate last.
+    std::optional<string::Strung> adjusted(string::Strung strung, const std::string& path) {
+        if (adjustments_.pitchOffsetCents != 0.0) {
+            const double hz = strung.partials.frequency(1) * ratio(adjustments_.pitchOffsetCents);
+            auto next = got(string::strungToPitch(strung.description, hz), path);
+            if (!next)
+                return next;
+            strung = std::move(*next);
+        }
+        if (adjustments_.tensionFactor != 1.0 || adjustments_.lengthFactor != 1.0) {
+            auto longer = strung.description;
+            longer.speakingLength *= adjustments_.lengthFactor;
+            auto next = got(string::strungToTension(longer, strung.statics.tension * adjustments_.tensionFactor), path);
+            if (!next)
+                return next;
+            strung = std::move(*next);
+        }
+        const double kelvin = instrument_.climate.temperatureC - tunedAtC + adjustments_.temperatureOffsetK;
+        if (kelvin != 0.0)
+            return got(string::atTemperature(strung, kelvin, instrument_.climate.frameExpansionPerK), path);
+        return strung;
+    }
+
+    void course(const Placed& placed) {
+        const auto& from = placed.course;
+        design::CourseDescription to;
+        to.name = from.note.value_or(tuning::noteName(placed.key));
+        to.key = placed.key;
+        to.bridge = placed.bridge;
+        to.bridgePosition = placed.position;
+        to.pluckRatio = pluckRatioOf(from, instrument_.playing.with);
+        to.hasDamper = from.damper;
+        to.frets = from.frets;
+        for (int s = 0; s < from.strings; ++s) {
+            const auto index = static_cast<std::size_t>(s);
+            const auto path = placed.path + (from.each.empty() ? "" : ".each[" + std::to_string(s) + "]");
+            const double detune = from.detuneCents.empty() ? 0.0 : from.detuneCents[index];
+            // Strings that are alike in everything are worked out once.
+            if (s > 0 && from.each.empty() && detune == (from.detuneCents.empty() ? 0.0 : from.detuneCents[index - 1])) {
+                to.strings.push_back(to.strings.back());
+                continue;
+            }
+            auto strung = got(tuned(stringOf(from, index), detune, tuning_, instrument_), path);
+            if (!strung)
+                return;
+            const double atTuning = strung->partials.frequency(1) / ratio(detune);
+            auto ready = adjusted(std::move(*strung), path);
+            if (!ready)
+                return;
+            if (s == 0)
+                to.openHz = from.tensionN ? atTuning : pitchOf(stringOf(from, 0), tuning_);
+            to.strings.push_back(std::move(*ready));
+        }
+        described_.instrument.courses.push_back(std::move(to));
+    }
+
+    void rules() {
+        const auto& playing = instrument_.playing;
+        auto& rules = described_.rules;
+        rules.with = playing.with == With::plectrum ? playing::PluckedWith::plectrum : playing::PluckedWith::finger;
+        rules.width = playing.widthMm * 1e-3;
+        rules.force = playing.heightMm ? forceForHeight(*playing.heightMm * 1e-3) : playing.forceN;
+        rules.angle = radians(playing.angleDeg);
+        rules.keys = static_cast<playing::KeyTaking>(playing.notes);
+        rules.channelPerCourse = playing.channelPerCourse;
+        const bool plucked = playing.with == With::finger || playing.with == With::plectrum;
+        const double whole = !plucked           ? measureAt(64.0)
+                             : playing.heightMm ? *playing.heightMm
+                                                : playing.forceN;
+        for (const auto& [velocity, measure] : playing.velocity)
+            rules.velocity.push_back({velocity, whole > 0 ? measure / whole : 1.0});
+    }
+
+    double measureAt(double velocity) const {
+        const auto& points = instrument_.playing.velocity;
+        if (points.empty())
+            return 1.0;
+        for (std::size_t i = 1; i < points.size(); ++i)
+            if (velocity <= points[i][0])
+                return std::lerp(points[i - 1][1], points[i][1],
+                                 std::clamp((velocity - points[i - 1][0]) / (points[i][0] - points[i - 1][0]), 0.0, 1.0));
+        return points.back()[1];
+    }
+
+    /// F = T·h/(L·β·(1−β)), the pull that draws an ideal string aside by h at βL; of the middle course.
+    double forceForHeight(double height) const {
+        const auto& courses = described_.instrument.courses;
+        const auto& middle = courses[courses.size() / 2];
+        const auto& string = middle.strings.front();
+        return string.statics.tension * height /
+               (string.description.speakingLength * middle.pluckRatio * (1.0 - middle.pluckRatio));
+    }
+
+    const Instrument& instrument_;
+    const Adjustments& adjustments_;
+    tuning::Tuning tuning_;
+    Described described_;
+    Problems problems_;
+};
+
+} // namespace
+
+Result<Described, Problems> describe(const Instrument& instrument, const Adjustments& adjustments) {
+    return Describing(instrument, adjustments).describe();
+}
+
+} // namespace hitchpin::document
