@@ -14,6 +14,9 @@ namespace {
 using Complex = std::complex<double>;
 constexpr double pi = std::numbers::pi;
 
+/// Nepers: keeps the gain under 1 by more than the rounding of the shelves' coefficients.
+constexpr double leastLoss = 1e-12;
+
 /// Products written out: the library's own check for infinities at every turn, which costs half the design
 /// time.
 Complex times(Complex a, Complex b) {
@@ -86,7 +89,7 @@ bool setConstants(LoopModel& model, std::span<const double> constants, std::size
             AllpassSection& section = model.sections[(which - 1) / 2];
             ((which - 1) % 2 == 0 ? section.c0 : section.c1) = std::exp(value);
         } else if (which == lossAt) {
-            model.loss = std::exp(value);
+            model.loss = std::max(leastLoss, std::exp(value));
         } else {
             ShelfModel& shelf = model.shelves[(which - lossAt - 1) / 2];
             ((which - lossAt - 1) % 2 == 0 ? shelf.corner : shelf.depth) = std::exp(value);

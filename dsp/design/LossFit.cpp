@@ -101,8 +101,9 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
                 LoopModel candidate = model;
                 const double corner = lowest * std::pow(highest / lowest, (i + 0.5) / corners);
                 // As deep as what is to be lost at its corner.
-                const auto there = std::find_if(points.begin(), points.end() - 1,
-                                                [&](const LossPoint& point) { return point.x2 >= corner * corner; });
+                const auto there =
+                    std::find_if(points.begin(), points.end() - 1,
+                                 [&](const LossPoint& point) { return point.x2 >= corner * corner; });
                 candidate.shelves.push_back({loses, corner, there->loss});
                 const double candidateCost = refine(candidate, few, 8);
                 if (candidateCost < bestCost) {

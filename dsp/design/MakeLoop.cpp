@@ -30,8 +30,9 @@ constexpr double goodLossLive = 0.7, goodLossReference = 0.1;
 /// A fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02;
 constexpr double goodCentsReference = 0.003;
-/// Worst partial of a design that needs no more sections, cents.
+/// Worst partial of a design that needs no more sections, cents; and how many more are tried.
 constexpr double trueCents = 1.0;
+constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
 constexpr double goodT60 = 0.03;
 /// In a fit of both, so many per cent of T60 weigh as much as a cent.
@@ -177,8 +178,12 @@ bool tuneExactly(LoopModel& model, const LoopTarget& target) {
             return false;
         real += realStep;
         model.thiranDelay += delayStep;
-        if (model.delay() < leastDelay || model.thiranDelay <= 0.0)
+        if (model.delay() < leastDelay)
             return false;
+        // Far from one sample the line has to take it; Thiran's section alone would bend the phase. Not at once:
+        // near half the rate its delay is not what it is called, and the search would go back and forth.
+        if (model.thiranDelay < 0.2 * shortestThiran || model.thiranDelay > 2.0 * longestThiran)
+            splitDelay(model);
         if (std::abs(delayStep) < 1e-13 * model.delay() &&
             std::abs(realStep) < 1e-14 + 1e-12 * std::abs(real))
             return true;
@@ -397,7 +402,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     // room for all, since every section takes delay out of the line.
     std::vector<int> counts;
     const int most = std::min(mostSections(settings.quality), plan.coveredPartial - 1);
-    for (int count = plan.sections; count <= std::min(plan.sections + 2, most); ++count)
+    for (int count = plan.sections; count <= std::min(plan.sections + mostExtra, most); ++count)
         counts.push_back(count);
     for (int count = plan.sections - 1; count >= 0; --count)
         counts.push_back(count);
