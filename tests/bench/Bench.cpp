@@ -1,0 +1,66 @@
+// Measures that need a quiet machine or a human eye, and so are no tests. Times are printed in milliseconds
+// and as ratios to one fixed piece of arithmetic in the same run, which compares better from machine to
+// machine.
+#include "dsp/design/MakeLoop.h"
+#include "tests/support/YardstickStrings.h"
+
+#include <algorithm>
+#include <chrono>
+#include <cmath>
+#include <cstdio>
+
+using namespace hitchpin;
+
+namespace {
+
+template <class Work>
+double milliseconds(Work work) {
+    const auto start = std::chrono::steady_clock::now();
+    work();
+    return std::chrono::duration<double, std::milli>(std::chrono::steady_clock::now() - start).count();
+}
+
+/// The best of several, since others use the machine too.
+template <class Work>
+double bestOf(int times, Work work) {
+    double best = milliseconds(work);
+    for (int i = 1; i < times; ++i)
+        best = std::min(best, milliseconds(work));
+    return best;
+}
+
+double sumOfSines() {
+    double sum = 0.0;
+    for (int i = 0; i < 100000; ++i)
+        sum += std::sin(1e-3 * i);
+    return sum;
+}
+
+} // namespace
+
+int main() {
+    volatile double kept = 0.0;
+    const double unit = bestOf(9, [&] { kept = sumOfSines(); });
+    std::printf("unit: 100000 sines, %.3f ms\n\n", unit);
+    std::printf("%-20s %-10s %8s %8s %8s %8s  %2s %7s %9s %8s %7s\n", "string, 48 kHz", "quality", "make ms",
+                "units", "retune", "units", "K", "shelves", "to Hz", "cents", "T60 %");
+    for (const auto quality : {design::Quality::live, design::Quality::reference}) {
+        for (const auto& string : yardstick::strings()) {
+            const design::LoopSettings settings{48000.0, quality};
+            const string::Partials partials = string.partials(), other = string.partials(0.7);
+            const auto loop = design::makeLoop(partials, settings);
+            if (!loop) {
+                std::printf("%-20s %s\n", string.name, loop.error().message.c_str());
+                continue;
+            }
+            const int times = quality == design::Quality::live ? 7 : 3;
+            const double make = bestOf(times, [&] { kept = design::makeLoop(partials, settings)->gain; });
+            const double retune =
+                bestOf(times, [&] { kept = design::retuneLoop(*loop, other, settings)->gain; });
+            std::printf("%-20s %-10s %8.2f %8.1f %8.2f %8.2f  %2zu %7zu %9.0f %8.3f %7.2f\n", string.name,
+                        quality == design::Quality::live ? "live" : "reference", make, make / unit, retune,
+                        retune / unit, loop->sections.size(), loop->shelves.size(), loop->accuracy.coverageHz,
+                        loop->accuracy.worstCents, 100.0 * loop->accuracy.worstT60Error);
+        }
+    }
+}
