@@ -48,6 +48,12 @@ public:
     Ends ends() const noexcept { return ends_; }
 
 private:
+    struct RatioAt {
+        double value, derivative;
+    };
+    void setTable(std::vector<double> overF0);
+    RatioAt ratioAt(double n) const;
+
     double harmonicF0_ = 0.0;
     double inharmonicity_ = 0.0;
     Ends ends_;
