@@ -21,6 +21,8 @@ constexpr double hearing = 20000.0;
 /// ratio.
 constexpr double leastLoss = 1e-9;
 
+/// The first partial will be tuned exactly, and what the fit leaves there would shift all others.
+constexpr double firstWeight = 4.0;
 /// Nepers a round: what dies faster is gone within a few periods, and no shelf needs to say how fast.
 constexpr double mostLoss = 1.0;
 
@@ -93,6 +95,7 @@ std::vector<LoopTarget> phaseTargets(const string::Partials& partials, double sa
     std::vector<LoopTarget> targets;
     for (int half = 2; half <= 2 * coveredPartial; ++half)
         targets.push_back(targetAt(partials, sampleRate, 0.5 * half));
+    targets.front().weight = firstWeight;
     return targets;
 }
 

@@ -33,6 +33,10 @@ constexpr double goodCentsReference = 0.003;
 /// Worst partial of a design that needs no more sections, cents; and how many more are tried.
 constexpr double trueCents = 1.0;
 constexpr int mostExtra = 4;
+/// Partials at the end of the covered ones that may be given up for that.
+constexpr int mostTrimmed = 3;
+/// Hz: higher up nobody hears how long a partial rings.
+constexpr double t60CountsUpTo = 6000.0;
 /// Losses off by more than this are fitted again together with the phase.
 constexpr double goodT60 = 0.03;
 /// In a fit of both, so many per cent of T60 weigh as much as a cent.
@@ -180,8 +184,9 @@ bool tuneExactly(LoopModel& model, const LoopTarget& target) {
         model.thiranDelay += delayStep;
         if (model.delay() < leastDelay)
             return false;
-        // Far from one sample the line has to take it; Thiran's section alone would bend the phase. Not at once:
-        // near half the rate its delay is not what it is called, and the search would go back and forth.
+        // Far from one sample the line has to take it; Thiran's section alone would bend the phase. Not at
+        // once: near half the rate its delay is not what it is called, and the search would go back and
+        // forth.
         if (model.thiranDelay < 0.2 * shortestThiran || model.thiranDelay > 2.0 * longestThiran)
             splitDelay(model);
         if (std::abs(delayStep) < 1e-13 * model.delay() &&
@@ -191,11 +196,27 @@ bool tuneExactly(LoopModel& model, const LoopTarget& target) {
     return true;
 }
 
+/// Worst errors over the covered partials; NaN must not pass for small.
+void summarise(LoopAccuracy& accuracy) {
+    accuracy.worstCents = accuracy.worstT60Error = 0.0;
+    int found = 0;
+    for (const LoopAccuracy::PartialError& error : accuracy.partials) {
+        if (error.number > accuracy.coveragePartial)
+            break;
+        ++found;
+        accuracy.coverageHz = error.targetHz;
+        accuracy.worstCents = std::max(accuracy.worstCents, std::abs(error.cents));
+        if (error.targetHz <= t60CountsUpTo)
+            accuracy.worstT60Error = std::max(accuracy.worstT60Error, std::abs(error.t60Ratio - 1.0));
+    }
+    if (found < accuracy.coveragePartial)
+        accuracy.worstCents = std::numeric_limits<double>::infinity();
+}
+
 LoopAccuracy measure(const LoopModel& model, const string::Partials& partials, double sampleRate,
                      const LoopPlan& plan) {
     LoopAccuracy accuracy;
     accuracy.coveragePartial = plan.coveredPartial;
-    accuracy.coverageHz = partials.frequency(plan.coveredPartial);
     double cents = 0.0;
     for (int n = 1; n <= std::max(plan.coveredPartial, leastReported); ++n) {
         const LoopTarget target = targetAt(partials, sampleRate, n);
@@ -204,27 +225,26 @@ LoopAccuracy measure(const LoopModel& model, const string::Partials& partials, d
         // Beyond the covered partials the loop drifts away steadily: start from where the last one was.
         const Complex start(target.p.real(), target.p.imag() * std::exp(cents / centsPerNeper));
         const Complex pole = loopPole(model, target.turns, start);
-        LoopAccuracy::PartialError error{};
-        error.number = n;
-        error.targetHz = target.frequency;
-        error.cents = centsPerNeper * std::log(pole.imag() / target.p.imag());
-        error.t60Ratio = target.p.real() / pole.real();
-        if (n <= plan.coveredPartial) {
-            // NaN must not pass for small.
-            if (!(std::abs(error.cents) <= accuracy.worstCents))
-                accuracy.worstCents =
-                    std::isnan(error.cents) ? std::numeric_limits<double>::infinity() : std::abs(error.cents);
-            const double t60Error = std::abs(error.t60Ratio - 1.0);
-            if (target.frequency <= 6000.0 && !(t60Error <= accuracy.worstT60Error))
-                accuracy.worstT60Error =
-                    std::isnan(t60Error) ? std::numeric_limits<double>::infinity() : t60Error;
-        }
-        if (!std::isnan(error.cents)) {
-            cents = error.cents;
-            accuracy.partials.push_back(error);
-        }
+        if (std::isnan(pole.imag()))
+            continue;
+        cents = centsPerNeper * std::log(pole.imag() / target.p.imag());
+        accuracy.partials.push_back({n, target.frequency, cents, target.p.real() / pole.real()});
     }
+    summarise(accuracy);
     return accuracy;
+}
+
+/// Where the sections hardly suffice the last partials may be off: then they do not count as covered.
+void trimCoverage(LoopAccuracy& accuracy) {
+    for (const LoopAccuracy::PartialError& error : accuracy.partials) {
+        if (error.number > accuracy.coveragePartial || std::abs(error.cents) <= trueCents)
+            continue;
+        if (error.number > 1 && error.number > accuracy.coveragePartial - mostTrimmed) {
+            accuracy.coveragePartial = error.number - 1;
+            summarise(accuracy);
+        }
+        return;
+    }
 }
 
 std::string shortNumber(double value) {
@@ -298,7 +318,7 @@ std::optional<LoopDesign> finish(LoopModel model, const string::Partials& partia
     if (accuracy.worstCents > trueCents && !phase.empty()) {
         std::vector<LoopTarget> weighted = phase;
         LoopModel even = model;
-        for (int round = 0; round < 4 && accuracy.worstCents > trueCents; ++round) {
+        for (int round = 0; round < 6 && accuracy.worstCents > trueCents; ++round) {
             double sum = 0.0;
             std::vector<double> miss;
             for (const LoopTarget& target : weighted) {
@@ -419,8 +439,10 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
         if (design && (!best || design->accuracy.worstCents < best->accuracy.worstCents))
             best = std::move(design);
     }
-    if (best)
+    if (best) {
+        trimCoverage(best->accuracy);
         return *std::move(best);
+    }
     return Failure{"no loop could be fitted to a first partial of " + shortNumber(partials.frequency(1.0)) +
                    " Hz at a sample rate of " + shortNumber(settings.sampleRate) + " Hz"};
 }
@@ -435,10 +457,11 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
     if (sameKind && plan.sections == static_cast<int>(neighbour.sections.size())) {
         const auto phase = phaseTargets(partials, settings.sampleRate, plan.coveredPartial);
         const auto loss = lossTargets(partials, settings.sampleRate, plan.coveredPartial);
-        // As true as the neighbour, within so much more of its error.
+        // As true as the neighbour within so much more of its error, and true at all where the neighbour was.
         const auto trueEnough = [&](const LoopAccuracy& accuracy, double more) {
             const LoopAccuracy& known = neighbour.accuracy;
-            return accuracy.worstCents <= (1.0 + more) * known.worstCents + 0.2 * more &&
+            const double cents = (1.0 + more) * known.worstCents + 0.2 * more;
+            return accuracy.worstCents <= std::min(cents, std::max(trueCents, known.worstCents)) &&
                    accuracy.worstT60Error <= (1.0 + more) * known.worstT60Error + 0.02 * more;
         };
         LoopModel model = scaled(modelOf(neighbour), phase.front().frequency / neighbour.firstPartialHz);

@@ -192,6 +192,26 @@ TEST_CASE("loop, yardstick strings at reference quality", "[design]") {
     }
 }
 
+TEST_CASE("loop, every kind of ends", "[design]") {
+    using string::End;
+    for (const End nut : {End::hinged, End::clamped, End::free}) {
+        for (const End bridge : {End::hinged, End::clamped, End::free}) {
+            const string::Partials partials(220.0, 2e-4, {nut, bridge}, {3e-3, 2e-4, 5e-4, 6e-3}, 128);
+            const LoopDesign loop = made(partials, 48000.0, Quality::live);
+            const Judged judged = judge(loop, partials);
+            std::printf("ends %d %d: K %zu, first %.1e cents, worst %.3f cents (%d), T60 %.2f %%\n",
+                        static_cast<int>(nut), static_cast<int>(bridge), loop.sections.size(),
+                        judged.firstCents, judged.worstCents, judged.worstPartial, 100.0 * judged.worstT60);
+            INFO("nut " << static_cast<int>(nut) << ", bridge " << static_cast<int>(bridge));
+            checkSound(loop);
+            CHECK(loop.turn == ((nut == End::free) != (bridge == End::free) ? -1.0 : 1.0));
+            CHECK(judged.firstCents <= firstPartialCents);
+            CHECK(judged.worstCents <= partialCents);
+            CHECK(judged.worstT60 <= t60Share);
+        }
+    }
+}
+
 TEST_CASE("loop, first partial of a whole compass at every rate", "[design]") {
     // A compass like a piano's: inharmonicity falls to the tenor and doubles every eight semitones above
     // (Young 1952), T60 from air and material.
