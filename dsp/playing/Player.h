@@ -17,7 +17,10 @@ inline constexpr double fullScaleNewtons = 20.0;
 enum class PluckedWith { finger, plectrum };
 
 /// How keys take courses. asBuilt: the nearest course at or below within its frets, notes together shared out so
-/// that they take different courses. everyKeyStrung: the description already holds a course for each key.
+/// that they take different courses: a course that no key holds before one that is held, then the highest open one,
+/// then the one whose last note is longest ago. A repeated note takes its own course again. Where every course that
+/// could sound a key is held, the one taken first gives way. everyKeyStrung: the description already holds a course
+/// for each key.
 enum class KeyTaking { asBuilt, everyKeyStrung };
 
 struct VelocityPoint {
@@ -79,21 +82,35 @@ public:
     const engine::Engine& engine() const noexcept;
 
 private:
+    struct Course {
+        int key = -1;           ///< the key that took it last, −1 for none since the start
+        int channel = 0;
+        int stop = 0;           ///< fret at which it speaks
+        bool held = false;      ///< that key is still down
+        bool sustained = false; ///< the key is up, the pedal holds the note
+        unsigned long taken = 0; ///< when, in order of taking; 0 for never
+    };
+
     void handle(const Event&) noexcept;
+    void noteOn(const Event&) noexcept;
+    void noteOff(int channel, int key) noexcept;
+    void movePedal(int channel, bool down) noexcept;
+    void release(std::size_t course) noexcept;
+    void pluck(std::size_t course, double velocity) noexcept;
+    void damp(std::size_t course, double t60) noexcept;
+    void dampUnlessHeld(std::size_t course) noexcept;
+    int courseFor(int key, int channel) const noexcept;
+    bool reaches(std::size_t course, int key) const noexcept;
+    bool pedalHolds() const noexcept;
+    double damperT60(int key) const noexcept;
+    double factorFor(double velocity) const noexcept;
 
     engine::Engine engine_;
     Rules rules_;
     Hand hand_;
-    struct CourseState {
-        int key = -1;          ///< the key that last took it, −1 for none
-        int channel = 0;
-        bool held = false;     ///< key down
-        bool sustained = false;
-        unsigned long age = 0; ///< order of taking
-    };
-    std::vector<CourseState> courses_;
-    std::array<bool, 16> pedal_{};
-    unsigned long clock_ = 0;
+    std::vector<Course> courses_;
+    std::array<bool, 16> pedals_{};
+    unsigned long takings_ = 0;
 };
 
 } // namespace hitchpin::playing

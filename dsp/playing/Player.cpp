@@ -1,0 +1,264 @@
+#include "dsp/playing/Player.h"
+
+#include <algorithm>
+#include <cmath>
+
+namespace hitchpin::playing {
+namespace {
+
+/// A finger that leaves a fret puts the string out nearly as fast as a damper in the treble. Common practice.
+constexpr double fingerLeavesT60 = 0.08; // s
+
+/// Nearer to an end than this nobody can take a string.
+constexpr double nearestToAnEnd = 0.02;
+
+bool isPedalDown(double value) { return value >= 64.0; } // MIDI 1.0: 64…127 is on
+
+} // namespace
+
+Player::Player(std::shared_ptr<const design::InstrumentDesign> design, Rules rules)
+    : engine_(std::move(design)), rules_(std::move(rules)), courses_(engine_.design().courses.size()) {
+    reset();
+}
+
+void Player::reset() noexcept {
+    engine_.reset();
+    std::fill(courses_.begin(), courses_.end(), Course{});
+    pedals_.fill(false);
+    takings_ = 0;
+    for (std::size_t course = 0; course < courses_.size(); ++course)
+        dampUnlessHeld(course);
+}
+
+void Player::setHand(const Hand& hand) noexcept { hand_ = hand; }
+
+void Player::listen(const engine::Listening& listening) noexcept { engine_.listen(listening); }
+
+void Player::process(std::span<const Event> events, double* left, double* right, int frames) noexcept {
+    int done = 0;
+    const auto soundUntil = [&](int frame) {
+        if (frame > done) {
+            engine_.process(left + done, right != nullptr ? right + done : nullptr, frame - done);
+            done = frame;
+        }
+    };
+    for (const Event& event : events) {
+        soundUntil(std::clamp(event.frame, done, std::max(done, frames)));
+        handle(event);
+    }
+    soundUntil(frames);
+}
+
+// Events ---------------------------------------------------------------------------------------------------------
+
+void Player::handle(const Event& event) noexcept {
+    const bool onItsWay = event.channel >= 1 && event.channel <= 16 && std::isfinite(event.value);
+    if (!onItsWay)
+        return;
+    switch (event.kind) {
+    case Event::Kind::noteOn:
+        if (event.value > 0.0)
+            noteOn(event);
+        else
+            noteOff(event.channel, event.key); // MIDI 1.0: velocity 0 ends a note
+        break;
+    case Event::Kind::noteOff:
+        noteOff(event.channel, event.key);
+        break;
+    case Event::Kind::sustain:
+        movePedal(event.channel, isPedalDown(event.value));
+        break;
+    case Event::Kind::allNotesOff:
+        for (std::size_t course = 0; course < courses_.size(); ++course)
+            if (courses_[course].held && courses_[course].channel == event.channel)
+                release(course);
+        break;
+    case Event::Kind::allSoundOff:
+        engine_.silence();
+        for (Course& course : courses_)
+            course.held = course.sustained = false;
+        for (std::size_t course = 0; course < courses_.size(); ++course)
+            dampUnlessHeld(course);
+        break;
+    }
+}
+
+void Player::noteOn(const Event& event) noexcept {
+    const int chosen = courseFor(event.key, event.channel);
+    if (chosen < 0)
+        return;
+    const auto index = static_cast<std::size_t>(chosen);
+    const design::CourseDesign& design = engine_.design().courses[index];
+    Course& course = courses_[index];
+    const int stop = event.key - design.key;
+    if (stop != course.stop)
+        for (int i = 0; i < design.stringCount; ++i)
+            engine_.stopAt(design.firstString + i, stop);
+    course = {event.key, event.channel, stop, true, false, ++takings_};
+    damp(index, 0.0);
+    pluck(index, event.value);
+}
+
+void Player::noteOff(int channel, int key) noexcept {
+    for (std::size_t course = 0; course < courses_.size(); ++course)
+        if (courses_[course].held && courses_[course].key == key && courses_[course].channel == channel)
+            release(course);
+}
+
+void Player::movePedal(int channel, bool down) noexcept {
+    pedals_[static_cast<std::size_t>(channel - 1)] = down;
+    // The pedal lifts every damper of the instrument, so that strings nobody plays ring along.
+    for (std::size_t index = 0; index < courses_.size(); ++index) {
+        Course& course = courses_[index];
+        if (pedalHolds()) {
+            if (engine_.design().courses[index].hasDamper)
+                damp(index, 0.0);
+        } else if (course.sustained) {
+            release(index);
+        } else {
+            dampUnlessHeld(index);
+        }
+    }
+}
+
+void Player::release(std::size_t index) noexcept {
+    Course& course = courses_[index];
+    course.held = false;
+    course.sustained = pedalHolds();
+    if (course.sustained)
+        return;
+    const design::CourseDesign& design = engine_.design().courses[index];
+    if (design.hasDamper)
+        damp(index, damperT60(course.key));
+    else if (course.stop > 0)
+        damp(index, fingerLeavesT60 / std::max(hand_.dampingFactor, 0.01));
+    // An open string without a damper rings on, as a harp's does.
+}
+
+// The hand -------------------------------------------------------------------------------------------------------
+
+void Player::pluck(std::size_t index, double velocity) noexcept {
+    const design::CourseDesign& design = engine_.design().courses[index];
+    engine::Pluck pluck;
+    pluck.force = rules_.force * factorFor(velocity) * hand_.forceFactor;
+    pluck.pointRatio = std::clamp(design.pluckRatio + hand_.pluckPointOffset, nearestToAnEnd, 1.0 - nearestToAnEnd);
+    pluck.width = rules_.width * hand_.widthFactor;
+    pluck.angle = rules_.angle + hand_.angleOffset;
+    for (int i = 0; i < design.stringCount; ++i)
+        engine_.pluck(design.firstString + i, pluck);
+}
+
+double Player::factorFor(double velocity) const noexcept {
+    const auto& points = rules_.velocity;
+    if (points.empty())
+        return velocity / 64.0;
+    const auto above = std::find_if(points.begin(), points.end(),
+                                    [&](const VelocityPoint& point) { return point.velocity >= velocity; });
+    if (above == points.begin())
+        return points.front().factor;
+    if (above == points.end())
+        return points.back().factor;
+    const VelocityPoint& low = *(above - 1);
+    const double t = (velocity - low.velocity) / (above->velocity - low.velocity);
+    return low.factor + t * (above->factor - low.factor);
+}
+
+void Player::damp(std::size_t index, double t60) noexcept {
+    const design::CourseDesign& design = engine_.design().courses[index];
+    for (int i = 0; i < design.stringCount; ++i)
+        engine_.damp(design.firstString + i, t60);
+}
+
+void Player::dampUnlessHeld(std::size_t index) noexcept {
+    const design::CourseDesign& design = engine_.design().courses[index];
+    const Course& course = courses_[index];
+    if (design.hasDamper && !course.held && !course.sustained && !pedalHolds())
+        damp(index, damperT60(design.key));
+}
+
+/// Felt stops a treble sooner than a bass: 0.5 s at A1, halved every two octaves, never under 0.05 s. Common
+/// practice for the order of size; a damper's place, width and pressure decide the rest on a real instrument.
+double Player::damperT60(int key) const noexcept {
+    const double t60 = std::max(0.05, 0.5 * std::exp2((33.0 - key) / 24.0));
+    return t60 / std::max(hand_.dampingFactor, 0.01);
+}
+
+bool Player::pedalHolds() const noexcept {
+    return std::find(pedals_.begin(), pedals_.end(), true) != pedals_.end();
+}
+
+// Keys and courses -----------------------------------------------------------------------------------------------
+
+bool Player::reaches(std::size_t course, int key) const noexcept {
+    const design::CourseDesign& design = engine_.design().courses[course];
+    return key >= design.key && key - design.key <= design.frets;
+}
+
+int Player::courseFor(int key, int channel) const noexcept {
+    if (rules_.channelPerCourse) {
+        const auto index = static_cast<std::size_t>(channel - 1);
+        return index < courses_.size() && reaches(index, key) ? channel - 1 : -1;
+    }
+    const auto better = [&](std::size_t a, std::size_t b) {
+        const Course &x = courses_[a], &y = courses_[b];
+        const bool own = x.key == key && x.channel == channel, owns = y.key == key && y.channel == channel;
+        if (own != owns)
+            return own;
+        if (x.held != y.held)
+            return !x.held;
+        const int open = engine_.design().courses[a].key, opens = engine_.design().courses[b].key;
+        if (!x.held && open != opens)
+            return open > opens;
+        return x.taken < y.taken;
+    };
+    int best = -1;
+    for (std::size_t i = 0; i < courses_.size(); ++i)
+        if (reaches(i, key) && (best < 0 || better(i, static_cast<std::size_t>(best))))
+            best = static_cast<int>(i);
+    return best;
+}
+
+KeyState Player::keyState(int key) const noexcept {
+    KeyState state = KeyState::silent;
+    for (std::size_t i = 0; i < courses_.size(); ++i) {
+        if (engine_.design().courses[i].key == key)
+            return KeyState::open;
+        if (reaches(i, key))
+            state = KeyState::stopped;
+    }
+    return state;
+}
+
+// What sounds ----------------------------------------------------------------------------------------------------
+
+int Player::putOutQuietest(int count) noexcept {
+    const int strings = static_cast<int>(engine_.design().strings.size());
+    int done = 0;
+    // By rising energy without a list to sort: each round finds the least that is over the last one put out.
+    double over = 0.0;
+    while (done < count) {
+        int quietest = -1;
+        double least = 0.0;
+        for (int string = 0; string < strings; ++string) {
+            const double energy = engine_.energy(string);
+            if (energy > over && (quietest < 0 || energy < least)) {
+                quietest = string;
+                least = energy;
+            }
+        }
+        if (quietest < 0)
+            break;
+        engine_.silence(quietest);
+        over = least;
+        ++done;
+    }
+    return done;
+}
+
+bool Player::silent() const noexcept { return engine_.silent(); }
+
+int Player::ringingStrings() const noexcept { return engine_.ringingStrings(); }
+
+const engine::Engine& Player::engine() const noexcept { return engine_; }
+
+} // namespace hitchpin::playing
