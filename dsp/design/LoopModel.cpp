@@ -121,13 +121,14 @@ Complex logLine(const LoopModel& model, Complex p, Complex s, std::span<Complex>
     for (std::size_t k = 0; k < model.sections.size(); ++k) {
         const AllpassSection& section = model.sections[k];
         const Complex upper = s2 - section.c1 * s + section.c0, lower = s2 + section.c1 * s + section.c0;
-        const Complex overLower = inverse(lower);
-        const Complex next = times(product, times(upper, overLower));
+        // One division serves the quotient N/D = N²/(ND) and the derivatives.
+        const Complex overBoth = inverse(times(upper, lower));
+        const Complex next = times(product, times(times(upper, upper), overBoth));
         fullTurns += higherAngle(next, product) ? 1 : 0;
         product = next;
         if (derivatives) {
             // d ln A/d ln c0 = c0·(1/N − 1/D) = 2c0c1·s/(ND);  d ln A/d ln c1 = −c1·s·(1/N + 1/D)
-            const Complex common = (2.0 * section.c1) * times(s, times(overLower, inverse(upper)));
+            const Complex common = (2.0 * section.c1) * times(s, overBoth);
             byConstant[1 + 2 * k] = section.c0 * common;
             byConstant[2 + 2 * k] = -times(common, s2 + section.c0);
         }
