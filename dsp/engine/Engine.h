@@ -15,10 +15,13 @@ struct Pluck {
     double angle = 1.5707963267948966; ///< rad from across towards into
 };
 
-/// Where the sound is taken: the forces with which the strings pull at their bridges.
+/// Where the sound is taken: the forces with which the strings pull at their bridges. At a free end there is no
+/// force: what is heard of such a string is Z0 times the velocity of that end.
 struct Listening {
     double angle = 1.5707963267948966; ///< rad from across towards into: which direction of the force is heard
-    double spread = 0.0;      ///< 0: both sides alike; 1: the ends of a bridge lie fully left and right
+    /// 0: both sides alike, each the plain sum; 1: the ends of a bridge lie fully left and right. In between with
+    /// constant power.
+    double spread = 0.0;
 };
 
 /// Constructing allocates; afterwards every call is real-time safe: no lock, no heap, no exception, no log.
@@ -33,6 +36,8 @@ public:
     /// At rest, as if new. Keeps design and listening.
     void reset() noexcept;
 
+    /// On a string that rings it adds. The point is kept between 0 and 1; a pluck that is no number is ignored,
+    /// as is a string that does not exist, here and below.
     void pluck(int string, const Pluck&) noexcept;
     /// The string speaks from fret `stop` (0 = open) from now on. What rang before is put out at the finger.
     void stopAt(int string, int stop) noexcept;
@@ -44,7 +49,8 @@ public:
     void silence(int string) noexcept;
     void listen(const Listening&) noexcept;
 
-    /// Adds nothing: writes `frames` samples of bridge force in newtons. `right` may be null.
+    /// Adds nothing: writes `frames` samples of bridge force in newtons. `right` may be null; then `left` is the
+    /// plain sum, whatever the spread.
     void process(double* left, double* right, int frames) noexcept;
 
     /// Joules on all strings: never grows but by what a pluck puts in.
@@ -55,6 +61,11 @@ public:
     bool silent() const noexcept;
     /// Strings that are being computed now.
     int ringingStrings() const noexcept;
+
+    /// Velocity of the string at a place, m/s, at the newest sample: the sum of the two travelling waves, taken
+    /// from the line. Exact for a string whose loop has no filters; where part of the loop is filter, waves that
+    /// disperse are shown as if they did not. What a pluck sends appears as it reaches the bridge: wait a round trip.
+    double velocityAt(int string, bool across, double ratioFromBridge) const noexcept;
 
     const design::InstrumentDesign& design() const noexcept;
 

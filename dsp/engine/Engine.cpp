@@ -1,0 +1,505 @@
+#include "dsp/engine/Engine.h"
+
+#include "dsp/engine/Rail.h"
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <numbers>
+
+namespace hitchpin::engine {
+namespace {
+
+/// All that depends on anything but the sound itself happens where the sample clock is a multiple of these, so that
+/// it cannot depend on the host's blocks.
+constexpr std::int64_t tile = Rail::longestChunk;
+constexpr std::int64_t restCheck = 16 * tile;
+
+/// A rail with less energy rests: on a guitar string about 4e-10 N at the bridge, 214 dB under 20 N.
+constexpr double restEnergy = 1e-22; // J
+/// A bridge that has moved less since the last check brings nothing that is worth computing: in a second it would
+/// bring a string of 1 kg/s 1e-22 J.
+constexpr double restVelocity = 1e-11; // m/s
+
+/// Loops a string has for its stops: one that speaks and those that are still being put out.
+constexpr int slotCount = 3;
+
+// Times that a hand or a felt takes, s. Common practice: short against an attack, long against a click.
+constexpr double putOutAtFinger = 0.030;
+constexpr double silenced = 0.005;
+constexpr double damperFalls = 0.005;
+constexpr double damperLeaves = 0.001;
+constexpr double listeningMoves = 0.005;
+
+enum Direction { across, into };
+enum Side { left, right };
+
+} // namespace
+
+struct Engine::Running {
+    struct Slot {
+        std::array<Rail, 2> rails;
+        int stop = 0;
+
+        bool running() const noexcept { return rails[across].running() || rails[into].running(); }
+        /// Free for another stop: nothing of it will be heard any more.
+        bool over() const noexcept { return !running() || rails[across].presence.isZero(); }
+    };
+
+    struct String {
+        std::vector<RailLoop> stops;
+        std::vector<Slot> slots;
+        int speaking = 0;
+        double damperT60 = 0.0; ///< 0: lifted
+        double impedance = 0.0;
+        bool freeBridge = false;
+        int bridge = -1;        ///< whose motion it shares in the direction `into`; −1 for none
+        double position = 0.5;
+        /// [direction][side], and the plain sum's by direction.
+        std::array<std::array<double, 2>, 2> heardFrom{}, heardTo{};
+    };
+
+    struct Bridge {
+        std::vector<int> strings;
+        double resistance = 0.0;
+        double peakVelocity = 0.0;    ///< since the last check
+        std::int64_t stillUntil = 0;  ///< after `silence` nothing is woken by it until what rang is out
+    };
+
+    explicit Running(std::shared_ptr<const design::InstrumentDesign>);
+
+    String* find(int string) noexcept {
+        return string >= 0 && string < static_cast<int>(strings.size()) ? &strings[static_cast<std::size_t>(string)]
+                                                                        : nullptr;
+    }
+    int samples(double seconds) const noexcept { return std::max(1, static_cast<int>(seconds * sampleRate)); }
+
+    void reset() noexcept;
+    void speak(String&, int stop, double putOutSeconds) noexcept;
+    double holdFor(const String&, const RailLoop&) const noexcept;
+    void wake(Bridge&) noexcept;
+    void setListening(const Listening&) noexcept;
+
+    void run(double* leftOut, double* rightOut, int count) noexcept;
+    void runBridge(Bridge&, double* leftOut, double* rightOut, int count) noexcept;
+    void runAlone(const String&, Rail&, Direction, double* leftOut, double* rightOut, int count) noexcept;
+    void hear(const String&, Direction, const double* force, double* leftOut, double* rightOut, int offset,
+              int count) noexcept;
+    void restWhatIsOver() noexcept;
+
+    double energyOf(const String& string, const Rail& rail) const noexcept {
+        return string.impedance * rail.sumOfSquares() / sampleRate;
+    }
+
+    std::shared_ptr<const design::InstrumentDesign> design;
+    double sampleRate;
+    std::vector<String> strings;
+    std::vector<Bridge> bridges;
+    std::int64_t clock = 0; ///< the next sample
+
+    Listening listening;
+    std::int64_t listeningSettled = 0; ///< sample from which `heardTo` holds alone
+
+    /// Waves of the rails of one bridge within a chunk, Rail::longestChunk each.
+    std::vector<double> waves;
+    struct Port {
+        const String* string;
+        Rail* rail;
+    };
+    std::vector<Port> ports;
+};
+
+Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
+    : design(std::move(given)), sampleRate(design->sampleRate) {
+    for (const auto& bridge : design->bridges)
+        bridges.push_back({{}, bridge.resistance, 0.0, 0});
+    strings.reserve(design->strings.size());
+    for (const auto& from : design->strings) {
+        String& string = strings.emplace_back();
+        const bool freeNut = from.ends.nut == string::End::free;
+        for (const auto& stop : from.stops)
+            string.stops.emplace_back(stop.loop, freeNut);
+        string.slots.assign(slotCount, Slot{{Rail(string.stops), Rail(string.stops)}, 0});
+        string.impedance = from.impedance;
+        string.freeBridge = from.ends.bridge == string::End::free;
+        string.position = std::clamp(from.bridgePosition, 0.0, 1.0);
+        // A soundboard sounds as its remainder for now: the plate's resistance.
+        if (!string.freeBridge && design->bridges[static_cast<std::size_t>(from.bridge)].kind != design::BridgeKind::rigid) {
+            string.bridge = from.bridge;
+            bridges[static_cast<std::size_t>(from.bridge)].strings.push_back(static_cast<int>(strings.size()) - 1);
+        }
+    }
+    std::size_t mostPorts = 1;
+    for (const auto& bridge : bridges)
+        mostPorts = std::max(mostPorts, bridge.strings.size() * slotCount);
+    ports.reserve(mostPorts);
+    waves.assign(mostPorts * Rail::longestChunk, 0.0);
+    reset();
+}
+
+void Engine::Running::reset() noexcept {
+    clock = 0;
+    for (String& string : strings) {
+        string.speaking = 0;
+        string.damperT60 = 0.0;
+        for (Slot& slot : string.slots) {
+            slot.stop = 0;
+            for (Rail& rail : slot.rails)
+                rail.speak(string.stops.front());
+        }
+    }
+    for (Bridge& bridge : bridges) {
+        bridge.peakVelocity = 0.0;
+        bridge.stillUntil = 0;
+    }
+    setListening(listening);
+}
+
+// Playing ------------------------------------------------------------------------------------------------------
+
+double Engine::Running::holdFor(const String& string, const RailLoop& loop) const noexcept {
+    return string.damperT60 > 0.0 ? std::pow(10.0, -3.0 * loop.roundTrip / (sampleRate * string.damperT60)) : 1.0;
+}
+
+/// A clean slot takes over; the one that spoke is put out. A third that has not yet gone gives way: the one with
+/// the least energy.
+void Engine::Running::speak(String& string, int stop, double putOutSeconds) noexcept {
+    Slot& old = string.slots[static_cast<std::size_t>(string.speaking)];
+    if (old.running()) {
+        for (Rail& rail : old.rails)
+            rail.presence.move(0.0, samples(putOutSeconds));
+        int taken = -1;
+        double least = 0.0;
+        for (int i = 0; i < slotCount; ++i) {
+            const Slot& slot = string.slots[static_cast<std::size_t>(i)];
+            if (i == string.speaking)
+                continue;
+            double energy = 0.0;
+            if (!slot.over())
+                for (const Rail& rail : slot.rails)
+                    energy += energyOf(string, rail);
+            if (taken < 0 || energy < least) {
+                taken = i;
+                least = energy;
+            }
+        }
+        string.speaking = taken;
+    }
+    Slot& fresh = string.slots[static_cast<std::size_t>(string.speaking)];
+    fresh.stop = stop;
+    for (Rail& rail : fresh.rails) {
+        rail.speak(string.stops[static_cast<std::size_t>(stop)]);
+        rail.hold.jump(holdFor(string, rail.loop()));
+    }
+}
+
+/// Every string on a bridge that moves may move with it.
+void Engine::Running::wake(Bridge& bridge) noexcept {
+    for (const int index : bridge.strings) {
+        String& string = strings[static_cast<std::size_t>(index)];
+        string.slots[static_cast<std::size_t>(string.speaking)].rails[into].wake();
+    }
+}
+
+void Engine::Running::setListening(const Listening& wanted) noexcept {
+    // Where the last move has not ended, the next starts from where it stands.
+    const double share = clock < listeningSettled
+                             ? 1.0 - static_cast<double>(listeningSettled - clock) / samples(listeningMoves)
+                             : 1.0;
+    listening = wanted;
+    for (String& string : strings) {
+        const double turn = std::numbers::pi * (0.25 + 0.5 * wanted.spread * (string.position - 0.5));
+        const std::array<double, 2> sides{std::numbers::sqrt2 * std::cos(turn), std::numbers::sqrt2 * std::sin(turn)};
+        const std::array<double, 2> directions{std::cos(wanted.angle), std::sin(wanted.angle)};
+        for (std::size_t d = 0; d < 2; ++d)
+            for (std::size_t s = 0; s < 2; ++s) {
+                string.heardFrom[d][s] += share * (string.heardTo[d][s] - string.heardFrom[d][s]);
+                string.heardTo[d][s] = directions[d] * sides[s];
+            }
+    }
+    listeningSettled = clock == 0 ? 0 : clock + samples(listeningMoves);
+}
+
+// Sounding -----------------------------------------------------------------------------------------------------
+
+/// A chunk that does not cross a tile.
+void Engine::Running::run(double* leftOut, double* rightOut, int count) noexcept {
+    std::fill_n(leftOut, count, 0.0);
+    if (rightOut != nullptr)
+        std::fill_n(rightOut, count, 0.0);
+    for (Bridge& bridge : bridges)
+        runBridge(bridge, leftOut, rightOut, count);
+    for (String& string : strings)
+        for (Slot& slot : string.slots) {
+            // Across, every bridge is rigid so far: it yields into the soundboard only.
+            runAlone(string, slot.rails[across], across, leftOut, rightOut, count);
+            if (string.bridge < 0)
+                runAlone(string, slot.rails[into], into, leftOut, rightOut, count);
+        }
+    clock += count;
+    if (clock % tile == 0) {
+        for (String& string : strings)
+            for (Slot& slot : string.slots)
+                for (Rail& rail : slot.rails)
+                    if (rail.running())
+                        rail.flush();
+        if (clock % restCheck == 0)
+            restWhatIsOver();
+    }
+}
+
+/// The bridge moves with one velocity v under the forces of its strings and its own resistance. A string pulls with
+/// Z·(in − out) and in + out = v, so (ΣZ + R)·v = 2·ΣZ·in. Passive: Σ Z·(in² − out²) = R·v².
+/// Every loop is longer than the steps taken here, so that all arriving waves are known before the junction: it is
+/// exact at every sample.
+void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOut, int count) noexcept {
+    ports.clear();
+    double load = bridge.resistance;
+    int step = count;
+    for (const int index : bridge.strings) {
+        String& string = strings[static_cast<std::size_t>(index)];
+        for (int i = 0; i < slotCount; ++i) {
+            Rail& rail = string.slots[static_cast<std::size_t>(i)].rails[into];
+            // A string at rest still holds the bridge.
+            if (rail.running() || i == string.speaking)
+                load += string.impedance;
+            if (rail.running()) {
+                ports.push_back({&string, &rail});
+                step = std::min(step, rail.delay());
+            }
+        }
+    }
+    if (ports.empty())
+        return;
+
+    std::array<double, Rail::longestChunk> velocity;
+    for (int offset = 0; offset < count; offset += step) {
+        step = std::min(step, count - offset);
+        std::fill_n(velocity.begin(), step, 0.0);
+        double* wave = waves.data();
+        for (const Port& port : ports) {
+            port.rail->arrive(wave, step, clock + offset);
+            const double weight = 2.0 * port.string->impedance / load;
+            for (int i = 0; i < step; ++i)
+                velocity[static_cast<std::size_t>(i)] += weight * wave[i];
+            wave += Rail::longestChunk;
+        }
+        for (int i = 0; i < step; ++i)
+            bridge.peakVelocity = std::max(bridge.peakVelocity, std::abs(velocity[static_cast<std::size_t>(i)]));
+        wave = waves.data();
+        for (const Port& port : ports) {
+            std::array<double, Rail::longestChunk> force;
+            for (int i = 0; i < step; ++i) {
+                const double in = wave[i], out = velocity[static_cast<std::size_t>(i)] - in;
+                force[static_cast<std::size_t>(i)] = port.string->impedance * (in - out);
+                wave[i] = out;
+            }
+            port.rail->leave(wave, step);
+            hear(*port.string, into, force.data(), leftOut, rightOut, offset, step);
+            wave += Rail::longestChunk;
+        }
+    }
+}
+
+/// A rail whose bridge end is rigid (out = −in) or free (out = +in; the end then moves with 2·in).
+void Engine::Running::runAlone(const String& string, Rail& rail, Direction direction, double* leftOut,
+                               double* rightOut, int count) noexcept {
+    if (!rail.running())
+        return;
+    std::array<double, Rail::longestChunk> wave, force;
+    const double sign = string.freeBridge ? 1.0 : -1.0;
+    int step = std::min(count, rail.delay());
+    for (int offset = 0; offset < count; offset += step) {
+        step = std::min(step, count - offset);
+        rail.arrive(wave.data(), step, clock + offset);
+        for (int i = 0; i < step; ++i) {
+            const auto at = static_cast<std::size_t>(i);
+            force[at] = 2.0 * string.impedance * wave[at];
+            wave[at] *= sign;
+        }
+        rail.leave(wave.data(), step);
+        hear(string, direction, force.data(), leftOut, rightOut, offset, step);
+    }
+}
+
+void Engine::Running::hear(const String& string, Direction direction, const double* force, double* leftOut,
+                           double* rightOut, int offset, int count) noexcept {
+    const auto& from = string.heardFrom[direction];
+    const auto& to = string.heardTo[direction];
+    const auto share = [&](int i) {
+        const std::int64_t toGo = listeningSettled - (clock + offset + i);
+        return toGo > 0 ? 1.0 - static_cast<double>(toGo) / samples(listeningMoves) : 1.0;
+    };
+    const bool moving = clock + offset < listeningSettled;
+    const auto add = [&](double* sum, double a, double b) {
+        if (moving) {
+            for (int i = 0; i < count; ++i)
+                sum[i] += (a + share(i) * (b - a)) * force[i];
+        } else {
+            for (int i = 0; i < count; ++i)
+                sum[i] += b * force[i];
+        }
+    };
+    if (rightOut == nullptr) {
+        // The plain sum: the gain that both sides have at the middle, √½·√2 = 1 times the direction's.
+        const auto middle = [](const std::array<double, 2>& sides) {
+            return std::copysign(std::sqrt(0.5 * (sides[left] * sides[left] + sides[right] * sides[right])), sides[left]);
+        };
+        add(leftOut + offset, middle(from), middle(to));
+        return;
+    }
+    add(leftOut + offset, from[left], to[left]);
+    add(rightOut + offset, from[right], to[right]);
+}
+
+void Engine::Running::restWhatIsOver() noexcept {
+    for (Bridge& bridge : bridges)
+        if (bridge.peakVelocity >= restVelocity && clock >= bridge.stillUntil)
+            wake(bridge);
+    for (String& string : strings)
+        for (Slot& slot : string.slots)
+            for (Rail& rail : slot.rails) {
+                if (!rail.running() || rail.releases.pending())
+                    continue;
+                const bool fed = &rail == &slot.rails[into] && string.bridge >= 0 &&
+                                 bridges[static_cast<std::size_t>(string.bridge)].peakVelocity >= restVelocity;
+                if (!fed && energyOf(string, rail) < restEnergy)
+                    rail.clear();
+            }
+    for (Bridge& bridge : bridges)
+        bridge.peakVelocity = 0.0;
+}
+
+// The public face ----------------------------------------------------------------------------------------------
+
+Engine::Engine(std::shared_ptr<const design::InstrumentDesign> design)
+    : running_(std::make_unique<Running>(std::move(design))) {}
+Engine::~Engine() = default;
+
+void Engine::reset() noexcept { running_->reset(); }
+
+void Engine::pluck(int index, const Pluck& pluck) noexcept {
+    Running& r = *running_;
+    Running::String* string = r.find(index);
+    if (string == nullptr || !std::isfinite(pluck.force) || !std::isfinite(pluck.pointRatio) ||
+        !std::isfinite(pluck.width) || !std::isfinite(pluck.angle))
+        return;
+    // A string that is being put out starts afresh beside what is still sinking.
+    const int stop = string->slots[static_cast<std::size_t>(string->speaking)].stop;
+    for (const Rail& rail : string->slots[static_cast<std::size_t>(string->speaking)].rails)
+        if (!rail.presence.isOne()) {
+            r.speak(*string, stop, silenced);
+            break;
+        }
+    const auto& design = r.design->strings[static_cast<std::size_t>(index)];
+    const double samplesPerMetre = r.sampleRate / design.stops[static_cast<std::size_t>(stop)].waveSpeed;
+    const double step = 0.5 * pluck.force / string->impedance; // of velocity, each way
+    const std::array<double, 2> share{std::cos(pluck.angle), std::sin(pluck.angle)};
+    Running::Slot& slot = string->slots[static_cast<std::size_t>(string->speaking)];
+    for (const Direction direction : {across, into}) {
+        // Turning a right angle to the other direction leaves a rounding error that is no pluck.
+        if (std::abs(share[direction]) < 1e-12 || step == 0.0)
+            continue;
+        Rail& rail = slot.rails[direction];
+        rail.releases.add(Release(r.clock, step * share[direction],
+                                  {rail.loop().roundTrip, std::clamp(pluck.pointRatio, 0.0, 1.0),
+                                   std::max(0.0, pluck.width) * samplesPerMetre,
+                                   design.ends.nut == string::End::free, string->freeBridge}),
+                          r.clock);
+        rail.wake();
+    }
+}
+
+void Engine::stopAt(int index, int stop) noexcept {
+    Running::String* string = running_->find(index);
+    if (string == nullptr || stop < 0 || stop >= static_cast<int>(string->stops.size()) ||
+        string->slots[static_cast<std::size_t>(string->speaking)].stop == stop)
+        return;
+    running_->speak(*string, stop, putOutAtFinger);
+}
+
+void Engine::damp(int index, double t60) noexcept {
+    Running& r = *running_;
+    Running::String* string = r.find(index);
+    if (string == nullptr || !std::isfinite(t60))
+        return;
+    string->damperT60 = std::max(0.0, t60);
+    const int time = r.samples(string->damperT60 > 0.0 ? damperFalls : damperLeaves);
+    for (Rail& rail : string->slots[static_cast<std::size_t>(string->speaking)].rails) {
+        const double hold = r.holdFor(*string, rail.loop());
+        if (rail.running())
+            rail.hold.move(hold, time);
+        else
+            rail.hold.jump(hold);
+    }
+}
+
+void Engine::silence() noexcept {
+    for (int index = 0; index < static_cast<int>(running_->strings.size()); ++index)
+        silence(index);
+    for (Running::Bridge& bridge : running_->bridges)
+        bridge.stillUntil = running_->clock + running_->samples(silenced) + restCheck;
+}
+
+void Engine::silence(int index) noexcept {
+    if (Running::String* string = running_->find(index))
+        for (Running::Slot& slot : string->slots)
+            for (Rail& rail : slot.rails)
+                if (rail.running())
+                    rail.presence.move(0.0, running_->samples(silenced));
+}
+
+void Engine::listen(const Listening& listening) noexcept {
+    if (std::isfinite(listening.angle) && std::isfinite(listening.spread))
+        running_->setListening({listening.angle, std::clamp(listening.spread, 0.0, 1.0)});
+}
+
+void Engine::process(double* left, double* right, int frames) noexcept {
+    for (int done = 0; done < frames;) {
+        const int count = std::min(frames - done, static_cast<int>(tile - running_->clock % tile));
+        running_->run(left + done, right != nullptr ? right + done : nullptr, count);
+        done += count;
+    }
+}
+
+double Engine::energy() const noexcept {
+    double sum = 0.0;
+    for (int index = 0; index < static_cast<int>(running_->strings.size()); ++index)
+        sum += energy(index);
+    return sum;
+}
+
+double Engine::energy(int index) const noexcept {
+    const Running::String* string = running_->find(index);
+    double sum = 0.0;
+    if (string != nullptr)
+        for (const Running::Slot& slot : string->slots)
+            for (const Rail& rail : slot.rails)
+                if (rail.running())
+                    sum += running_->energyOf(*string, rail);
+    return sum;
+}
+
+bool Engine::silent() const noexcept { return ringingStrings() == 0; }
+
+int Engine::ringingStrings() const noexcept {
+    return static_cast<int>(std::count_if(running_->strings.begin(), running_->strings.end(), [](const auto& string) {
+        return std::any_of(string.slots.begin(), string.slots.end(), [](const auto& slot) { return slot.running(); });
+    }));
+}
+
+/// What left the bridge γT/2 ago is at γ on its way out; what left it T − γT/2 ago is there on its way back, turned
+/// over where the nut is rigid.
+double Engine::velocityAt(int index, bool isAcross, double ratioFromBridge) const noexcept {
+    const Running::String* string = running_->find(index);
+    if (string == nullptr)
+        return 0.0;
+    const Rail& rail = string->slots[static_cast<std::size_t>(string->speaking)].rails[isAcross ? across : into];
+    const double roundTrip = rail.loop().roundTrip, way = 0.5 * std::clamp(ratioFromBridge, 0.0, 1.0) * roundTrip;
+    const double turned = std::copysign(1.0, rail.loop().factor);
+    return rail.left(way) + turned * rail.left(roundTrip - way);
+}
+
+const design::InstrumentDesign& Engine::design() const noexcept { return *running_->design; }
+
+} // namespace hitchpin::engine
