@@ -1,0 +1,134 @@
+// What travelling waves do at the ends of a string. Facts of every textbook of acoustics (common practice): a fixed
+// end turns a pulse over; a free end sends it back upright and moves twice as far itself; an end of resistance R
+// reflects displacement by (Z − R)/(Z + R), so that R = Z swallows it.
+#include "dsp/engine/Engine.h"
+#include "tests/support/PlainInstruments.h"
+
+#include <catch2/catch.hpp>
+
+#include <algorithm>
+#include <cmath>
+#include <iostream>
+#include <numbers>
+
+using namespace hitchpin;
+using engine::Engine;
+using string::End;
+using support::IdealString;
+
+namespace {
+
+constexpr int roundTrip = 400;         // samples
+constexpr double impedance = 0.5;      // kg/s
+constexpr double stepVelocity = 1.0;   // F/2Z for F = 1 N
+constexpr int pulseSamples = 6;
+/// A place a quarter of the string from the bridge: 50 samples away.
+constexpr double place = 0.25;
+constexpr int away = 50;
+/// Waves keep their shape but for the rounding of some hundred additions.
+constexpr double rounding = 1e-12;
+
+struct Motion {
+    std::vector<double> heard;   ///< N at the bridge
+    std::vector<double> atPlace; ///< m/s
+};
+
+/// Two opposite plucks at the middle, a few samples apart, send a pulse of displacement both ways. What has not yet
+/// been at the bridge is not seen on the string, so within the first round trip the place shows only what has been
+/// reflected there.
+Motion firstRoundTrip(const IdealString& string, const design::BridgeDesign& bridge = {}) {
+    Engine engine(support::idealInstrument({string}, bridge));
+    Motion motion;
+    for (int i = 0; i < roundTrip - away; ++i) {
+        if (i == 0 || i == pulseSamples)
+            engine.pluck(0, {i == 0 ? 1.0 : -1.0, 0.5, 0.0, std::numbers::pi / 2.0});
+        double out = 0.0;
+        engine.process(&out, nullptr, 1);
+        motion.heard.push_back(out);
+        motion.atPlace.push_back(engine.velocityAt(0, false, place));
+    }
+    return motion;
+}
+
+/// The waves that arrive at a rigid bridge: F = 2·Z·in.
+std::vector<double> arrivingAtRigidEnd() {
+    std::vector<double> in = firstRoundTrip({roundTrip, impedance}).heard;
+    for (double& value : in)
+        value /= 2.0 * impedance;
+    return in;
+}
+
+double sum(const std::vector<double>& signal) {
+    double total = 0.0;
+    for (const double value : signal)
+        total += value;
+    return total;
+}
+
+} // namespace
+
+TEST_CASE("A pulse arrives at the bridge as it was sent", "[engine]") {
+    const auto in = arrivingAtRigidEnd();
+    // Up to half a round trip only the pulse sent towards the bridge has arrived: −F/2Z for six samples.
+    const std::vector<double> first(in.begin(), in.begin() + roundTrip / 2);
+    const double displacement = sum(first), expected = -stepVelocity * pulseSamples;
+    // The two plucks' static pull, F/2 coming in over a round trip, leaves ½·6/400 of a step over those 200 samples.
+    const double pull = 0.5 * stepVelocity * pulseSamples / roundTrip * (roundTrip / 2);
+    CHECK(displacement == Approx(expected + pull).margin(0.01 * pulseSamples));
+}
+
+// Turned red by: out = +in at a rigid bridge, or a reflection a sample late.
+TEST_CASE("A pulse at a rigid end returns inverted", "[engine]") {
+    const auto in = arrivingAtRigidEnd();
+    const auto seen = firstRoundTrip({roundTrip, impedance}).atPlace;
+    double worst = 0.0;
+    for (std::size_t t = away; t < seen.size(); ++t)
+        worst = std::max(worst, std::abs(seen[t] + in[t - away]));
+    std::cout << "rigid end: returning wave against -arriving, worst " << worst << " m/s of " << stepVelocity
+              << " (allowed " << rounding << ")\n";
+    CHECK(worst <= rounding * stepVelocity);
+}
+
+// Turned red by: a free bridge handled as a rigid one.
+TEST_CASE("A pulse at a free end returns upright and moves the end twice as far", "[engine]") {
+    const auto motion = firstRoundTrip({roundTrip, impedance, {End::hinged, End::free}});
+    double worst = 0.0, leavingDisplacement = 0.0, endDisplacement = 0.0;
+    for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
+        const double endVelocity = motion.heard[t - away] / impedance; // what is heard of a free end is Z·v
+        worst = std::max(worst, std::abs(2.0 * motion.atPlace[t] - endVelocity));
+        if (t < roundTrip / 2 + away) {
+            leavingDisplacement += motion.atPlace[t];
+            endDisplacement += endVelocity;
+        }
+    }
+    std::cout << "free end: end velocity against twice the returning wave, worst " << worst << " m/s (allowed "
+              << rounding << ")\n";
+    CHECK(worst <= rounding * stepVelocity);
+    // Upright: the sign and size with which it was sent, towards a free end without any static pull.
+    CHECK(leavingDisplacement == Approx(-stepVelocity * pulseSamples).epsilon(0.01));
+    CHECK(endDisplacement == Approx(-2.0 * stepVelocity * pulseSamples).epsilon(0.01));
+}
+
+// Turned red by: v = ΣZ·in/(ΣZ+R), R and Z exchanged, or out = in − v.
+TEST_CASE("A resistance reflects by its share, a matched one nothing", "[engine]") {
+    const auto in = arrivingAtRigidEnd();
+    double worst = 0.0, matched = 0.0;
+    for (const double ratio : {0.0, 0.1, 0.3, 1.0, 3.0, 10.0, 1000.0}) {
+        const double resistance = ratio * impedance;
+        const auto motion =
+            firstRoundTrip({roundTrip, impedance}, {design::BridgeKind::resistance, resistance});
+        const double reflected = (impedance - resistance) / (impedance + resistance);
+        for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
+            worst = std::max(worst, std::abs(motion.atPlace[t] - reflected * in[t - away]));
+            if (ratio == 1.0)
+                matched = std::max(matched, std::abs(motion.atPlace[t]));
+            // The force on the bridge is R·v, v = in + out.
+            worst = std::max(worst, std::abs(motion.heard[t - away] / impedance -
+                                             ratio * (1.0 + reflected) * in[t - away]));
+        }
+    }
+    std::cout << "resistive ends: worst " << worst << " m/s, matched end returns " << matched << " m/s (allowed "
+              << rounding << ")\n";
+    CHECK(worst <= rounding * stepVelocity);
+    CHECK(matched <= rounding * stepVelocity);
+}

@@ -1,0 +1,113 @@
+// Instruments of known numbers for tests of the engine: ideal strings without filters, or real ones.
+#pragma once
+
+#include "dsp/design/InstrumentDesign.h"
+
+#include <cmath>
+#include <memory>
+#include <stdexcept>
+#include <utility>
+#include <vector>
+
+namespace hitchpin::support {
+
+struct IdealString {
+    int periodSamples = 200;   ///< once round the string
+    double impedance = 0.5;    ///< kg/s
+    string::Ends ends{};
+    double gain = 1.0;         ///< once round
+    int bridge = 0;
+};
+
+inline constexpr double idealRate = 48000.0;
+
+/// A loop that is all delay, so that waves keep their shape and places on the line are places on the string.
+inline design::StringDesign idealString(const IdealString& from, int course) {
+    design::SpeakingString open;
+    open.loop.sampleRate = idealRate;
+    open.loop.turn = from.ends.oneFree() ? -1.0 : 1.0;
+    // One round trip is a period, or half of one where one end is free.
+    open.loop.firstPartialHz = idealRate / from.periodSamples * (from.ends.oneFree() ? 0.5 : 1.0);
+    open.loop.delay = from.periodSamples - 1;
+    open.loop.thiran = 0.0; // one sample
+    open.loop.gain = from.gain;
+    open.speakingLength = 1.0;
+    open.waveSpeed = 2.0 * open.speakingLength * idealRate / from.periodSamples;
+    open.tension = from.impedance * open.waveSpeed;
+    design::StringDesign string;
+    string.course = course;
+    string.bridge = from.bridge;
+    string.impedance = from.impedance;
+    string.ends = from.ends;
+    string.stops = {open};
+    return string;
+}
+
+inline std::shared_ptr<const design::InstrumentDesign> idealInstrument(const std::vector<IdealString>& strings,
+                                                                       const design::BridgeDesign& bridge = {}) {
+    auto design = std::make_shared<design::InstrumentDesign>();
+    design->sampleRate = idealRate;
+    design->bridges = {bridge};
+    for (const auto& from : strings) {
+        const int index = static_cast<int>(design->strings.size());
+        design->strings.push_back(idealString(from, index));
+        design::CourseDesign course;
+        course.key = 60 + index;
+        course.firstString = index;
+        design->courses.push_back(course);
+    }
+    return design;
+}
+
+struct RealString {
+    const char* material = "music wire";
+    double lengthMetres = 0.65;
+    double diameterMetres = 0.4e-3;
+    double hertz = 220.0;
+    int key = 57;
+    int strings = 1;
+    double detuneCents = 0.0;
+    int frets = 0;
+    bool damper = false;
+    string::Ends ends{};
+    int bridge = 0;
+};
+
+inline design::InstrumentDescription realDescription(const std::vector<RealString>& courses,
+                                                     const design::BridgeDescription& bridge = {}) {
+    design::InstrumentDescription instrument;
+    instrument.bridges = {bridge};
+    for (const auto& from : courses) {
+        string::Description description;
+        description.speakingLength = from.lengthMetres;
+        description.build.core = {*string::findBuiltInMaterial(from.material), from.diameterMetres,
+                                  string::CoreShape::round, string::Measured::slack};
+        description.ends = from.ends;
+        design::CourseDescription course;
+        course.name = "test";
+        course.key = from.key;
+        course.openHz = from.hertz;
+        course.hasDamper = from.damper;
+        course.frets = from.frets;
+        course.bridge = from.bridge;
+        for (int i = 0; i < from.strings; ++i) {
+            auto strung = string::strungToPitch(description, from.hertz * std::exp2(i * from.detuneCents / 1200.0));
+            if (!strung)
+                throw std::runtime_error(strung.error().message);
+            course.strings.push_back(std::move(strung).value());
+        }
+        instrument.courses.push_back(std::move(course));
+    }
+    return instrument;
+}
+
+inline std::shared_ptr<const design::InstrumentDesign> realInstrument(const std::vector<RealString>& courses,
+                                                                      const design::BridgeDescription& bridge = {},
+                                                                      double sampleRate = 48000.0) {
+    auto made = design::makeInstrument(realDescription(courses, bridge), {sampleRate, design::Quality::live});
+    if (!made)
+        throw std::runtime_error(made.error().message);
+    return std::move(made).value();
+}
+
+} // namespace hitchpin::support
