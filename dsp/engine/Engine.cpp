@@ -193,11 +193,14 @@ void Engine::Running::speak(String& string, int stop, double putOutSeconds) noex
     }
 }
 
-/// Every string on a bridge that moves may move with it.
+/// Every string on a bridge that moves may move with it, from the first sample on. One that rests loads the bridge
+/// with Z0 and swallows what it is given; so does one under its damper, which would give back some of it for a tenth
+/// of a second or so, far below what plays: that is left out, and with it most of the work on a damped instrument.
 void Engine::Running::wake(Bridge& bridge) noexcept {
     for (const int index : bridge.strings) {
         String& string = strings[static_cast<std::size_t>(index)];
-        string.slots[static_cast<std::size_t>(string.speaking)].rails[into].wake();
+        if (string.damperT60 <= 0.0)
+            string.slots[static_cast<std::size_t>(string.speaking)].rails[into].wake();
     }
 }
 
@@ -361,7 +364,7 @@ void Engine::Running::restWhatIsOver() noexcept {
             for (Rail& rail : slot.rails) {
                 if (!rail.running() || rail.releases.pending())
                     continue;
-                const bool fed = &rail == &slot.rails[into] && string.bridge >= 0 &&
+                const bool fed = &rail == &slot.rails[into] && string.bridge >= 0 && string.damperT60 <= 0.0 &&
                                  bridges[static_cast<std::size_t>(string.bridge)].peakVelocity >= restVelocity;
                 if (!fed && energyOf(string, rail) < restEnergy)
                     rail.clear();
@@ -407,6 +410,11 @@ void Engine::pluck(int index, const Pluck& pluck) noexcept {
                                    design.ends.nut == string::End::free, string->freeBridge}),
                           r.clock);
         rail.wake();
+        if (direction == into && string->bridge >= 0) {
+            Running::Bridge& bridge = r.bridges[static_cast<std::size_t>(string->bridge)];
+            bridge.stillUntil = r.clock;
+            r.wake(bridge);
+        }
     }
 }
 
@@ -431,6 +439,11 @@ void Engine::damp(int index, double t60) noexcept {
             rail.hold.move(hold, time);
         else
             rail.hold.jump(hold);
+    }
+    if (string->damperT60 <= 0.0 && string->bridge >= 0) {
+        Running::Bridge& bridge = r.bridges[static_cast<std::size_t>(string->bridge)];
+        if (bridge.peakVelocity >= restVelocity && r.clock >= bridge.stillUntil)
+            r.wake(bridge);
     }
 }
 
