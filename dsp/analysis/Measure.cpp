@@ -25,6 +25,10 @@ constexpr std::size_t firstCount = 96;
 constexpr std::size_t mostSamples = 3072;
 /// Partials that one band is allowed to hold: its own, a twin, what leaks in from both sides, a rest.
 constexpr Eigen::Index mostPoles = 5;
+/// Left over by the poles found, as a share of the band's energy: more than this may be a twin, and is one if
+/// it takes most of it away.
+constexpr double suspicious = 1e-4;
+constexpr double twinShare = 0.2;
 /// Against the whole sound's mean square: weaker bands hold rounding errors alone.
 constexpr double leastShare = 1e-26;
 
@@ -207,6 +211,28 @@ std::optional<std::size_t> mainPole(const std::vector<Exponential>& poles, doubl
     return best;
 }
 
+/// Two strings that beat slowly, or ring down in two stages, look like one partial over the first span. Where
+/// one leaves much, a twin is tried beside it: a little higher or lower, or dying sooner or later.
+double addTwin(std::vector<Exponential>& poles, std::size_t main, const Eigen::VectorXcd& samples,
+               double residual) {
+    const Complex rate = poles[main].rate;
+    const double aside = pi / static_cast<double>(samples.size()),
+                 faster = 0.5 * std::max(std::abs(rate.real()), aside);
+    const std::vector<Exponential> alone = poles;
+    for (const Complex offset :
+         {Complex(0.0, aside), Complex(0.0, -aside), Complex(-faster, 0.0), Complex(faster, 0.0)}) {
+        std::vector<Exponential> both = alone;
+        both.push_back({rate + offset, 0.0});
+        fitWeights(both, samples);
+        const double left = refine(both, samples);
+        if (left < twinShare * residual) {
+            poles = both;
+            residual = left;
+        }
+    }
+    return residual;
+}
+
 MeasuredPartial measureBand(std::span<const double> sound, double sampleRate, double expectedHz, double gapHz,
                             double meanSquare) {
     const double centre = 2.0 * pi * expectedHz / sampleRate, gap = 2.0 * pi * gapHz / sampleRate;
@@ -237,9 +263,15 @@ MeasuredPartial measureBand(std::span<const double> sound, double sampleRate, do
         residual = refine(poles, band.samples.head(static_cast<Eigen::Index>(count)));
     }
 
-    const auto main = mainPole(poles, reach, count);
+    auto main = mainPole(poles, reach, count);
     if (!main)
         return {};
+    if (residual > suspicious && poles.size() < static_cast<std::size_t>(mostPoles)) {
+        residual = addTwin(poles, *main, band.samples.head(static_cast<Eigen::Index>(count)), residual);
+        main = mainPole(poles, reach, count);
+        if (!main)
+            return {};
+    }
     const Complex q = poles[*main].rate / static_cast<double>(band.step);
     const Complex weight =
         poles[*main].weight * std::exp(-q * static_cast<double>(band.first)) / band.response(q);

@@ -14,10 +14,14 @@ struct MeasuredPartial {
     double residual = 0.0;  ///< share of the band's energy that the fit leaves, 0…1: small is trustworthy
 };
 
-/// Damped sinusoids near each expected frequency, each fitted in its own band.
-/// @param sound samples from the release on  @param expectedHz rising, at least some bandwidths apart
+/// Damped sinusoids near each expected frequency, each fitted in its own band: mixed down, filtered, estimated by
+/// ESPRIT and refined by least squares, which in white noise is the likeliest. On clean sounds of a second true within
+/// 1e-4 cents and 1e-4 of the decay. Of two that one band holds (strings that beat, decay in two stages) the one with
+/// more energy is named.
+/// @param sound samples from the release on  @param expectedHz rising, at least some bandwidths apart. Those that are
+/// not asked for but sound beside should be listed too: the width of a band is the distance to the next one listed.
 /// A partial that cannot be found (over half the rate, under the noise) has frequency 0.
-/// Allocates; takes long; not for the audio thread.
+/// Allocates; takes long (milliseconds a partial); not for the audio thread.
 std::vector<MeasuredPartial> measurePartials(std::span<const double> sound, double sampleRate,
                                              std::span<const double> expectedHz);
 
