@@ -362,7 +362,13 @@ void Engine::Running::restWhatIsOver() noexcept {
     for (String& string : strings)
         for (Slot& slot : string.slots)
             for (Rail& rail : slot.rails) {
-                if (!rail.running() || rail.releases.pending())
+                if (!rail.running())
+                    continue;
+                if (rail.presence.isZero()) {
+                    rail.clear();
+                    continue;
+                }
+                if (rail.releases.pending())
                     continue;
                 const bool fed = &rail == &slot.rails[into] && string.bridge >= 0 && string.damperT60 <= 0.0 &&
                                  bridges[static_cast<std::size_t>(string.bridge)].peakVelocity >= restVelocity;
