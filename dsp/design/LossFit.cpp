@@ -5,6 +5,7 @@
 #include <algorithm>
 #include <cmath>
 #include <limits>
+#include <vector>
 
 namespace hitchpin::design {
 
@@ -118,6 +119,15 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
         cost = refined;
         model = best;
     }
+
+    // A shelf far below the lowest partial does the same to all of them, and would only leave a slow state that
+    // no damper reaches: what it takes is part of the constant.
+    std::erase_if(model.shelves, [&](const ShelfModel& shelf) {
+        if (shelf.corner > lowest / 16.0)
+            return false;
+        model.loss += shelf.loses == ShelfModel::Loses::high ? shelf.depth : 0.0;
+        return true;
+    });
 
     // Where that leaves much, it is spread evenly: what is worst counts more, round by round.
     for (int round = 0; round < 3; ++round) {
