@@ -102,15 +102,7 @@ double valueOf(const ParameterRow& row, const juce::String& text) {
 }
 
 Parameters::Parameters(juce::AudioProcessor& processor) {
-    std::unique_ptr<juce::AudioProcessorParameterGroup> group;
-    for (std::size_t i = 0; i < table.size(); ++i) {
-        const ParameterRow& row = table[i];
-        if (i == 0 || table[i - 1].group != row.group) {
-            if (group != nullptr)
-                processor.addParameterGroup(std::move(group));
-            const juce::String name = groupName(row.group);
-            group = std::make_unique<juce::AudioProcessorParameterGroup>(name.toLowerCase(), name, "|");
-        }
+    for (const ParameterRow& row : table) {
         // The unit is part of the text, so no label: hosts would write it twice.
         auto attributes =
             juce::AudioParameterFloatAttributes()
@@ -120,9 +112,8 @@ Parameters::Parameters(juce::AudioProcessor& processor) {
         auto parameter = std::make_unique<juce::AudioParameterFloat>(
             juce::ParameterID{row.id, row.version}, row.name, rangeOf(row), static_cast<float>(row.neutral), attributes);
         parameters_.push_back(parameter.get());
-        group->addChild(std::move(parameter));
+        processor.addParameter(parameter.release());
     }
-    processor.addParameterGroup(std::move(group));
 }
 
 double Parameters::value(std::size_t row) const noexcept { return static_cast<double>(parameters_[row]->get()); }

@@ -1,9 +1,9 @@
 #include "Source/plugin/Processor.h"
 
 #include "Source/editor/Editor.h"
-#include "Source/plugin/MidiEvents.h"
 #include "Source/plugin/Presets.h"
 #include "Source/plugin/State.h"
+#include "dsp/playing/MidiEvents.h"
 
 #include <cmath>
 
@@ -245,7 +245,7 @@ void Processor::makeBlock(juce::AudioBuffer<float>& buffer, const juce::MidiBuff
     for (playing::Event event; windowKeys_.pop(event);)
         add(event);
     for (const auto metadata : midi)
-        if (const auto event = eventFromMidi(metadata.data, metadata.numBytes, metadata.samplePosition))
+        if (const auto event = playing::eventFromMidi(metadata.data, metadata.numBytes, metadata.samplePosition))
             add(*event);
     while (spanStart < frames || count > 0) {
         const int span = std::min(Relay::mostFrames, frames - spanStart);
