@@ -31,7 +31,8 @@ template <class R>
 void leftOut(std::vector<std::string>& lines, const Records<R>& records, const std::string& path) {
     const auto& fields = table<R>().fields;
     for (std::size_t i = 0; i < fields.size(); ++i) {
-        if (fields[i].required)
+        // Records within are listed by their own keys.
+        if (fields[i].required || (!fields[i].recordType.empty() && defaultOf(fields[i]) == "{}"))
             continue;
         std::size_t count = 0;
         for (const R* record : records)
