@@ -94,7 +94,7 @@ Exit run(const Arguments& arguments) {
               << (*design)->strings[0].stops[0].loop.sections.size() << " allpass sections\n"
               << "B = " << juce::String(partials.inharmonicity(), 3, true) << ", F0 = "
               << juce::String(partials.harmonicF0(), 3) << " Hz; made to be true up to "
-              << juce::String(report.coverageHz, 0) << " Hz (partial " << report.coveragePartial << ")\n\n"
+              << juce::roundToInt(report.coverageHz) << " Hz (partial " << report.coveragePartial << ")\n\n"
               << "        predicted      measured     off   over n f1   ring time T60, s\n"
               << "   n           Hz            Hz    cent        cent  predicted   measured\n";
     double worstCents = 0.0, worstT60 = 0.0;

@@ -195,7 +195,7 @@ Exit run(const Arguments& arguments) {
     const auto decibels = written.peak > 0.0 ? juce::String(20.0 * std::log10(written.peak), 1) : juce::String("-inf");
     say(*out + ": " + juce::String(static_cast<double>(written.frames) / format.sampleRate, 2).toStdString() + " s, " +
         inWords(format) + ", peak " + juce::String(written.peak * playing::fullScaleNewtons, 2).toStdString() + " N (" +
-        decibels.toStdString() + " dB; full scale is " + juce::String(playing::fullScaleNewtons, 0).toStdString() +
+        decibels.toStdString() + " dB; full scale is " + std::to_string(juce::roundToInt(playing::fullScaleNewtons)) +
         " N of force at the bridge)");
     if (written.clipped > 0)
         say(format.bits == 32

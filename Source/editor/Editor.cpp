@@ -6,7 +6,7 @@ namespace hitchpin::editor {
 
 namespace {
 
-constexpr int margin = 16, handWidth = 336, keysHeight = 92, statusHeight = 24;
+constexpr int margin = 16, handWidth = 320, keysHeight = 92, statusHeight = 24;
 constexpr juce::uint32 limiterShownMs = 1500, overloadShownMs = 6000;
 
 juce::String fromUtf8(const std::string& text) { return juce::String::fromUTF8(text.c_str()); }
@@ -21,7 +21,7 @@ juce::String summaryOf(const plugin::InstrumentView& view) {
     juce::String text;
     text << courses << (courses == 1 ? " course, " : " courses, ") << strings << (strings == 1 ? " string" : " strings");
     const double total = view.schedule.totalTensionN;
-    text << ", " << (total < 1000.0 ? juce::String(total, 0) + " N" : juce::String(total / 1000.0, 2) + " kN")
+    text << ", " << (total < 1000.0 ? juce::String(juce::roundToInt(total)) + " N" : juce::String(total / 1000.0, 2) + " kN")
          << " of tension in all";
     return text;
 }
@@ -68,6 +68,7 @@ Editor::Editor(plugin::Processor& owner)
     handView_.setViewedComponent(&hand_, false);
     handView_.setScrollBarsShown(true, false);
 
+    sendLookAndFeelChange(); // the controls were made before they had a parent to draw like
     setResizable(true, true);
     setResizeLimits(760, 560, 3200, 2400);
     setSize(1180, 760);
@@ -156,11 +157,11 @@ void Editor::refresh() {
         write(message, paper::accent);
     for (const auto& problem : view->problems)
         write("No sound: " + problem, paper::accent);
-    for (const auto& warning : view->schedule.warnings)
-        write(warning, paper::accent);
     for (const auto& course : view->schedule.courses)
         for (const auto& warning : course.warnings)
             write(course.note + ": " + warning, paper::accent);
+    for (const auto& caution : view->schedule.warnings)
+        write(caution, paper::ink);
     for (const auto& sentence : view->notHeardYet)
         write(sentence, paper::ink);
     if (!view->instrument.remarks.empty())

@@ -5,7 +5,7 @@
 namespace hitchpin::editor {
 
 namespace {
-constexpr int lineHeight = 26, headingHeight = 24, nameWidth = 150, valueWidth = 82;
+constexpr int lineHeight = 26, headingHeight = 24, nameWidth = 148, valueWidth = 78;
 }
 
 HandPanel::HandPanel(const plugin::Parameters& parameters) {

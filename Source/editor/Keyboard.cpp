@@ -62,7 +62,7 @@ void Keyboard::fitRange() {
     for (int key = lowest; key <= highest; ++key)
         whites += juce::MidiMessage::isMidiNoteBlack(key) ? 0 : 1;
     const float width = static_cast<float>(std::max(1, getWidth()));
-    setKeyWidth(juce::jlimit(12.0f, 44.0f, width / static_cast<float>(whites)));
+    setKeyWidth(juce::jlimit(12.0f, 60.0f, width / static_cast<float>(whites)));
     setLowestVisibleKey(lowest);
     setKeyPressBaseOctave(juce::jlimit(0, 9, (lowest + highest) / 2 / 12));
 }

@@ -14,10 +14,10 @@ juce::String significant(double value, int digits) {
         return "0";
     const int before = static_cast<int>(std::floor(std::log10(std::abs(value)))) + 1;
     const int decimals = std::max(0, digits - before);
-    if (decimals > 0 || before <= digits)
+    if (decimals > 0)
         return juce::String(value, decimals);
     const double step = std::pow(10.0, before - digits);
-    return juce::String(std::round(value / step) * step, 0);
+    return juce::String(juce::roundToInt(std::round(value / step) * step));
 }
 
 juce::String wordsOf(const report::ScheduleRow& row) {
@@ -38,16 +38,16 @@ juce::String fromUtf8(const std::string& text) { return juce::String::fromUTF8(t
 constexpr int warningsColumn = 10;
 
 const std::array<Column, warningsColumn> columns{{
-    {" Note", 52, [](const report::ScheduleRow& r) { return fromUtf8(r.note); }},
-    {"Pitch Hz", 66, [](const report::ScheduleRow& r) { return juce::String(r.pitchHz, r.pitchHz < 1000 ? 2 : 1); }},
-    {"Strings", 54, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
-    {"Length mm", 62, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
-    {" Core", 136, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
-    {" Windings", 136, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
-    {"Tension N", 60, [](const report::ScheduleRow& r) { return significant(r.tensionN, 3); }},
-    {"Share of breaking", 66, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
-    {"Semitones to breaking", 74, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
-    {" Warnings", 250, wordsOf},
+    {" Note", 46, [](const report::ScheduleRow& r) { return fromUtf8(r.note); }},
+    {"Pitch Hz", 62, [](const report::ScheduleRow& r) { return juce::String(r.pitchHz, r.pitchHz < 1000 ? 2 : 1); }},
+    {"Strings", 50, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
+    {"Length mm", 56, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
+    {" Core", 118, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
+    {" Windings", 118, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
+    {"Tension N", 58, [](const report::ScheduleRow& r) { return significant(r.tensionN, 3); }},
+    {"Share of breaking", 60, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
+    {"Semitones to breaking", 68, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
+    {" Warnings", 160, wordsOf},
 }};
 
 } // namespace
@@ -79,7 +79,7 @@ void ScheduleTable::resized() {
     int others = 0;
     for (int i = 0; i + 1 < warningsColumn; ++i)
         others += table_.getHeader().getColumnWidth(i + 1);
-    table_.getHeader().setColumnWidth(warningsColumn, std::max(220, getWidth() - others - 14));
+    table_.getHeader().setColumnWidth(warningsColumn, std::max(160, getWidth() - others - 14));
 }
 
 int ScheduleTable::getNumRows() { return view_ != nullptr ? static_cast<int>(view_->schedule.courses.size()) : 0; }
