@@ -2,6 +2,7 @@
 
 #include "dsp/design/InstrumentDesign.h"
 
+#include <algorithm>
 #include <chrono>
 
 namespace hitchpin::plugin {
@@ -117,6 +118,11 @@ void Workbench::work() {
     }
     view->schedule = report::makeSchedule(*instrument, *described);
     view->notHeardYet = described->notHeardYet;
+    for (const auto& course : described->instrument.courses)
+        for (int key = 0; key < 128; ++key) {
+            auto& state = view->keys[static_cast<std::size_t>(key)];
+            state = std::max(state, playing::keyStateOf(key, course.key, course.frets));
+        }
     if (wanted.sampleRate > 0.0) {
         const auto design = design::makeInstrument(described->instrument, {wanted.sampleRate, design::Quality::live},
                                                    [&](double) { return stillWanted(); });
@@ -126,13 +132,13 @@ void Workbench::work() {
             // Made in place: a player cannot be moved.
             std::unique_ptr<PreparedPlayer> prepared(
                 new PreparedPlayer{wanted, (*design)->longestT60, playing::Player(*design, described->rules)});
-            for (int key = 0; key < 128; ++key)
-                view->keys[static_cast<std::size_t>(key)] = prepared->player.keyState(key);
             view->sounds = true;
             handover_.offer(std::move(prepared));
         } else {
             view->problems.push_back(design.error().message);
         }
+    } else {
+        view->problems.push_back("no sound device is open yet: choose one under Options, or start the host's sound");
     }
     const bool sounds = view->sounds;
     publish(std::move(view));

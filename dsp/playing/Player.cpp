@@ -191,7 +191,7 @@ bool Player::pedalHolds() const noexcept {
 
 bool Player::reaches(std::size_t course, int key) const noexcept {
     const design::CourseDesign& design = engine_.design().courses[course];
-    return key >= design.key && key - design.key <= design.frets;
+    return keyStateOf(key, design.key, design.frets) != KeyState::silent;
 }
 
 int Player::courseFor(int key, int channel) const noexcept {
@@ -220,12 +220,8 @@ int Player::courseFor(int key, int channel) const noexcept {
 
 KeyState Player::keyState(int key) const noexcept {
     KeyState state = KeyState::silent;
-    for (std::size_t i = 0; i < courses_.size(); ++i) {
-        if (engine_.design().courses[i].key == key)
-            return KeyState::open;
-        if (reaches(i, key))
-            state = KeyState::stopped;
-    }
+    for (const design::CourseDesign& course : engine_.design().courses)
+        state = std::max(state, keyStateOf(key, course.key, course.frets));
     return state;
 }
 

@@ -57,8 +57,15 @@ struct Event {
     double value = 0.0; ///< velocity 0…127, or pedal 0…127
 };
 
-/// What a key would do, for keyboards on screen.
-enum class KeyState { silent, open, stopped };
+/// What a key would do, for keyboards on screen. Of several courses the one that counts most.
+enum class KeyState { silent, stopped, open };
+
+/// What one course would do for a key.
+constexpr KeyState keyStateOf(int key, int openKey, int frets) noexcept {
+    return key == openKey                              ? KeyState::open
+           : key > openKey && key - openKey <= frets ? KeyState::stopped
+                                                       : KeyState::silent;
+}
 
 /// Real-time safe after construction, as the engine. One thread at a time.
 class Player {
