@@ -47,11 +47,6 @@ constexpr std::array<ParameterRow, rowCount> table{{
 
 bool isFactor(const ParameterRow& row) { return std::string_view(row.unit) == "×"; }
 
-/// Steps of the last written decimal, in double, so that neutral values, texts and stored states are exact.
-float snapped(const ParameterRow& row, double value) {
-    const double stepsPerUnit = std::pow(10.0, row.decimals);
-    return static_cast<float>(std::clamp(std::round(value * stepsPerUnit) / stepsPerUnit, row.least, row.most));
-}
 
 juce::NormalisableRange<float> rangeOf(const ParameterRow& row) {
     return {static_cast<float>(row.least), static_cast<float>(row.most),
@@ -66,7 +61,7 @@ juce::NormalisableRange<float> rangeOf(const ParameterRow& row) {
                                                    : (v - row.least) / (row.most - row.least);
                 return static_cast<float>(std::clamp(share, 0.0, 1.0));
             },
-            [&row](float, float, float value) { return snapped(row, static_cast<double>(value)); }};
+            [&row](float, float, float value) { return static_cast<float>(inSteps(row, static_cast<double>(value))); }};
 }
 
 } // namespace
@@ -81,6 +76,11 @@ const char* groupName(Group group) {
     case Group::listening: return "Listening";
     }
     return "";
+}
+
+double inSteps(const ParameterRow& row, double value) {
+    const double stepsPerUnit = std::pow(10.0, row.decimals);
+    return std::clamp(std::round(value * stepsPerUnit) / stepsPerUnit, row.least, row.most) + 0.0; // no −0
 }
 
 juce::String textOf(const ParameterRow& row, double value) {
@@ -116,7 +116,9 @@ Parameters::Parameters(juce::AudioProcessor& processor) {
     }
 }
 
-double Parameters::value(std::size_t row) const noexcept { return static_cast<double>(parameters_[row]->get()); }
+double Parameters::value(std::size_t row) const noexcept {
+    return inSteps(table[row], static_cast<double>(parameters_[row]->get()));
+}
 
 document::Adjustments Parameters::adjustments() const noexcept {
     document::Adjustments adjustments;

@@ -32,6 +32,9 @@ std::span<const ParameterRow> parameterTable();
 /// "Pluck", "Strings" …
 const char* groupName(ParameterRow::Group);
 
+/// The nearest whole step within the range, in double: so neutral values, texts and stored states are exact.
+double inSteps(const ParameterRow&, double value);
+
 /// "−12.0 dB", "×1.050", "5.0 °". Plain ASCII signs and digits, whatever the locale.
 juce::String textOf(const ParameterRow&, double value);
 /// The same with or without the unit, with a decimal point or comma. What is no number gives the neutral value.
@@ -53,8 +56,9 @@ public:
     juce::AudioParameterFloat& operator[](std::size_t row) const noexcept { return *parameters_[row]; }
     std::size_t size() const noexcept { return parameters_.size(); }
 
-private:
     double value(std::size_t row) const noexcept;
+
+private:
     std::vector<juce::AudioParameterFloat*> parameters_;
 };
 

@@ -13,7 +13,7 @@ std::span<const MigrationStep> migrationSteps() { return {}; }
 juce::String stateText(const document::Instrument& instrument, const Parameters& parameters) {
     auto* values = new juce::DynamicObject;
     for (std::size_t i = 0; i < parameters.size(); ++i)
-        values->setProperty(parameterTable()[i].id, static_cast<double>(parameters[i].get()));
+        values->setProperty(parameterTable()[i].id, parameters.value(i));
     auto* state = new juce::DynamicObject;
     const juce::var owner(state);
     state->setProperty(versionKey, stateVersion);
