@@ -29,7 +29,7 @@ std::optional<Read> readInstrument(const std::string& path) {
 
 void sayNotHeardYet(const document::Described& described) {
     for (const auto& sentence : described.notHeardYet)
-        say(sentence);
+        say("not heard yet: " + sentence);
 }
 
 } // namespace hitchpin::console

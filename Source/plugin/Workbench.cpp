@@ -138,7 +138,7 @@ void Workbench::work() {
             view->problems.push_back(design.error().message);
         }
     } else {
-        view->problems.push_back("no sound device is open yet: choose one under Options, or start the host's sound");
+        view->problems.push_back("there is no open sound device yet; choose one under Options, or start the host's sound");
     }
     const bool sounds = view->sounds;
     publish(std::move(view));
