@@ -31,6 +31,9 @@ juce::String summaryOf(const plugin::InstrumentView& view) {
 Editor::Editor(plugin::Processor& owner)
     : juce::AudioProcessorEditor(owner), processor_(owner), hand_(owner.parameters()), keys_(owner) {
     setLookAndFeel(&paper_);
+    // The app's own frame and dialogs are of the same paper; a host's windows are the host's.
+    if (owner.wrapperType == juce::AudioProcessor::wrapperType_Standalone)
+        juce::LookAndFeel::setDefaultLookAndFeel(&paper_);
     name_.setFont(titleFont());
     name_.setMinimumHorizontalScale(0.7f);
     summary_.setFont(textFont(13.5f));
@@ -71,7 +74,7 @@ Editor::Editor(plugin::Processor& owner)
     sendLookAndFeelChange(); // the controls were made before they had a parent to draw like
     setResizable(true, true);
     setResizeLimits(760, 560, 3200, 2400);
-    setSize(1180, 760);
+    setSize(1240, 780);
     refresh();
     startTimerHz(20);
 }
@@ -79,6 +82,22 @@ Editor::Editor(plugin::Processor& owner)
 Editor::~Editor() {
     stopTimer();
     setLookAndFeel(nullptr);
+    if (&juce::LookAndFeel::getDefaultLookAndFeel() == &paper_)
+        juce::LookAndFeel::setDefaultLookAndFeel(nullptr);
+}
+
+void Editor::parentHierarchyChanged() {
+    if (processor_.wrapperType != juce::AudioProcessor::wrapperType_Standalone)
+        return;
+    // The frame was there first and drawn otherwise. Later, since it is only now being put together.
+    juce::MessageManager::callAsync([safe = juce::Component::SafePointer<Editor>(this)] {
+        if (safe == nullptr)
+            return;
+        if (auto* frame = dynamic_cast<juce::DocumentWindow*>(safe->getTopLevelComponent())) {
+            frame->setBackgroundColour(paper::sheet);
+            frame->sendLookAndFeelChange();
+        }
+    });
 }
 
 void Editor::paint(juce::Graphics& g) {
@@ -163,7 +182,7 @@ void Editor::refresh() {
     for (const auto& caution : view->schedule.warnings)
         write(caution, paper::ink);
     for (const auto& sentence : view->notHeardYet)
-        write(sentence, paper::ink);
+        write("Not heard yet: " + sentence, paper::ink);
     if (!view->instrument.remarks.empty())
         write(view->instrument.remarks, paper::pencil);
     notes_.setCaretPosition(0);

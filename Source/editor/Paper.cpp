@@ -10,6 +10,9 @@ juce::Font titleFont(float height) { return juce::Font(juce::Font::getDefaultSer
 
 Paper::Paper() {
     using namespace juce;
+    // In the scheme's order: window, widget, menu, outline, text, fill, highlighted text, highlighted fill, menu text.
+    setColourScheme({paper::sheet, paper::inset, paper::sheet, paper::rule, paper::ink, paper::rule, paper::ink,
+                     paper::rule, paper::ink});
     setColour(ResizableWindow::backgroundColourId, paper::sheet);
     setColour(DocumentWindow::textColourId, paper::ink);
     setColour(Label::textColourId, paper::ink);

@@ -43,7 +43,7 @@ const std::array<Column, warningsColumn> columns{{
     {"Strings", 50, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
     {"Length mm", 56, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
     {" Core", 128, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
-    {" Windings", 126, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
+    {" Windings", 148, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
     {"Tension N", 58, [](const report::ScheduleRow& r) { return significant(r.tensionN, 3); }},
     {"Share of breaking", 60, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
     {"Semitones to breaking", 68, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
@@ -79,7 +79,7 @@ void ScheduleTable::resized() {
     int others = 0;
     for (int i = 0; i + 1 < warningsColumn; ++i)
         others += table_.getHeader().getColumnWidth(i + 1);
-    table_.getHeader().setColumnWidth(warningsColumn, std::max(142, getWidth() - others - 14));
+    table_.getHeader().setColumnWidth(warningsColumn, std::max(110, getWidth() - others - 14));
 }
 
 int ScheduleTable::getNumRows() { return view_ != nullptr ? static_cast<int>(view_->schedule.courses.size()) : 0; }

@@ -5,8 +5,8 @@
 namespace hitchpin::plugin {
 
 namespace {
-constexpr double smoothingSeconds = 0.1;
-constexpr double secondsBetweenMeasures = 0.03;
+constexpr double smoothingSeconds = 0.05;
+constexpr double secondsUntilOut = 0.06;
 } // namespace
 
 void LoadWatch::prepare(double sampleRate) noexcept {
@@ -15,18 +15,21 @@ void LoadWatch::prepare(double sampleRate) noexcept {
     load_.store(0.0, std::memory_order_relaxed);
 }
 
-bool LoadWatch::took(double seconds, int frames) noexcept {
+double LoadWatch::took(double seconds, int frames) noexcept {
     if (frames <= 0)
-        return false;
+        return 0.0;
     const double lasts = frames / sampleRate_;
     const double weight = 1.0 - std::exp(-lasts / smoothingSeconds);
-    const double load = load_.load(std::memory_order_relaxed) + weight * (seconds / lasts - load_.load(std::memory_order_relaxed));
-    load_.store(load, std::memory_order_relaxed);
+    const double before = load_.load(std::memory_order_relaxed), load = before + weight * (seconds / lasts - before);
     waitSeconds_ = std::fmax(0.0, waitSeconds_ - lasts);
-    if (load <= tooMuch || waitSeconds_ > 0.0)
-        return false;
-    waitSeconds_ = secondsBetweenMeasures;
-    return true;
+    if (load <= tooMuch || waitSeconds_ > 0.0) {
+        load_.store(load, std::memory_order_relaxed);
+        return 0.0;
+    }
+    // Load goes with the count of strings that sound, so much the greater part of the work is theirs.
+    waitSeconds_ = secondsUntilOut;
+    load_.store(comfortable, std::memory_order_relaxed);
+    return 1.0 - comfortable / load;
 }
 
 } // namespace hitchpin::plugin

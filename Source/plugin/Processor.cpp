@@ -269,9 +269,14 @@ void Processor::makeBlock(juce::AudioBuffer<float>& buffer, const juce::MidiBuff
     meters_.ringingStrings.store(ringing, std::memory_order_relaxed);
 
     const double took = juce::Time::highResolutionTicksToSeconds(juce::Time::getHighResolutionTicks() - began);
-    if (isNonRealtime() || !loadWatch_.took(took, frames) || ringing == 0)
+    if (isNonRealtime())
+        return; // there is time enough
+    const double tooMany = loadWatch_.took(took, frames);
+    if (tooMany <= 0.0 || ringing == 0)
         return;
-    int toPutOut = std::max(1, ringing / 4), putOut = 0;
+    const int toPutOut = std::clamp(static_cast<int>(std::ceil(tooMany * ringing)), 1, ringing);
+    int putOut = 0;
+    // The newest player's strings go last: the others only ring out.
     relay_.forEach([&](PreparedPlayer& prepared) {
         if (putOut < toPutOut)
             putOut += prepared.player.putOutQuietest(toPutOut - putOut);

@@ -74,18 +74,25 @@ TEST_CASE("after it acted the limiter becomes exactly transparent again and neit
     CHECK(worstStep <= dryStep); // it never makes a step steeper than the wave's own
 }
 
-TEST_CASE("the load watch asks for relief only when the machine falls behind") {
-    hitchpin::plugin::LoadWatch watch;
+TEST_CASE("the load watch asks for relief only when the machine falls behind, and for as much as is needed") {
+    using hitchpin::plugin::LoadWatch;
+    LoadWatch watch;
     watch.prepare(48000.0);
-    int asked = 0;
     for (int block = 0; block < 400; ++block)
-        asked += watch.took(0.5 * 480.0 / 48000.0, 480) ? 1 : 0;
-    CHECK(asked == 0);
+        CHECK(watch.took(0.5 * 480.0 / 48000.0, 480) == 0.0);
     CHECK(watch.load() == Approx(0.5).epsilon(0.01));
-    CHECK_FALSE(watch.took(0.015, 480)); // one late block is no reason
-    for (int block = 0; block < 400; ++block)
-        asked += watch.took(1.2 * 480.0 / 48000.0, 480) ? 1 : 0;
-    CHECK(asked > 10);
-    CHECK(asked < 200); // time to take effect in between
-    CHECK_FALSE(watch.took(1.0, 0));
+    CHECK(watch.took(0.015, 480) == 0.0); // one late block is no reason
+    // A machine whose load goes with the strings: 300 of them are half as much again as it can run.
+    double strings = 300.0;
+    int asked = 0;
+    for (int block = 0; block < 1000; ++block) {
+        const double share = watch.took(strings / 200.0 * 480.0 / 48000.0, 480);
+        asked += share > 0.0 ? 1 : 0;
+        strings *= 1.0 - share;
+    }
+    std::cout << "load watch: " << strings << " of 300 strings left after " << asked << " reliefs\n";
+    CHECK(strings <= LoadWatch::tooMuch * 200.0);
+    CHECK(strings >= 0.5 * LoadWatch::comfortable * 200.0);
+    CHECK(asked <= 4);
+    CHECK(watch.took(1.0, 0) == 0.0);
 }
