@@ -37,7 +37,7 @@ std::string runs(const std::set<int>& keys) {
 }
 
 Exit run(const Arguments& arguments) {
-    const auto read = readInstrument(arguments.file());
+    const auto read = readInstrument(arguments.file(), report::partialsForSchedule);
     if (!read)
         return failed;
     const auto& courses = read->described.instrument.courses;

@@ -9,7 +9,7 @@ juce::File fileNamed(const std::string& path) {
         juce::String::fromUTF8(path.data(), static_cast<int>(path.size())));
 }
 
-std::optional<Read> readInstrument(const std::string& path) {
+std::optional<Read> readInstrument(const std::string& path, int partialCount) {
     const auto sayAll = [&](const document::Problems& problems) {
         for (const auto& problem : problems)
             say(path + ": " + problem.message);
@@ -19,7 +19,7 @@ std::optional<Read> readInstrument(const std::string& path) {
         sayAll(instrument.error());
         return std::nullopt;
     }
-    auto described = document::describe(*instrument);
+    auto described = document::describe(*instrument, {}, partialCount);
     if (!described) {
         sayAll(described.error());
         return std::nullopt;

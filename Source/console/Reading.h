@@ -14,7 +14,7 @@ struct Read {
 };
 
 /// Says each problem on stderr and returns nothing when there is any.
-std::optional<Read> readInstrument(const std::string& path);
+std::optional<Read> readInstrument(const std::string& path, int partialCount = string::defaultPartialCount);
 
 /// As the shell names it, relative to where the program was called.
 juce::File fileNamed(const std::string& path);

@@ -18,7 +18,7 @@ bool writeText(const std::string& path, const std::string& text) {
 }
 
 Exit run(const Arguments& arguments) {
-    const auto read = readInstrument(arguments.file());
+    const auto read = readInstrument(arguments.file(), report::partialsForSchedule);
     if (!read)
         return failed;
     const auto schedule = report::makeSchedule(read->instrument, read->described);

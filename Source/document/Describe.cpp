@@ -45,8 +45,8 @@ private:
 
 class Describing {
 public:
-    Describing(const Instrument& instrument, const Adjustments& adjustments)
-        : instrument_(instrument), adjustments_(adjustments), tuning_(unstretched()) {}
+    Describing(const Instrument& instrument, const Adjustments& adjustments, int partialCount)
+        : instrument_(instrument), adjustments_(adjustments), partialCount_(partialCount), tuning_(unstretched()) {}
 
     Result<Described, Problems> describe() {
         // Only a document that was edited since it was read can break a rule here.
@@ -192,7 +192,7 @@ private:
     std::optional<string::Strung> adjusted(string::Strung strung, const std::string& path) {
         if (adjustments_.pitchOffsetCents != 0.0) {
             const double hz = strung.partials.frequency(1) * ratio(adjustments_.pitchOffsetCents);
-            auto next = got(string::strungToPitch(strung.description, hz), path);
+            auto next = got(string::strungToPitch(strung.description, hz, partialCount_), path);
             if (!next)
                 return next;
             strung = std::move(*next);
@@ -200,7 +200,8 @@ private:
         if (adjustments_.tensionFactor != 1.0 || adjustments_.lengthFactor != 1.0) {
             auto longer = strung.description;
             longer.speakingLength *= adjustments_.lengthFactor;
-            auto next = got(string::strungToTension(longer, strung.statics.tension * adjustments_.tensionFactor), path);
+            auto next = got(string::strungToTension(longer, strung.statics.tension * adjustments_.tensionFactor, partialCount_),
+                            path);
             if (!next)
                 return next;
             strung = std::move(*next);
@@ -230,7 +231,7 @@ private:
                 to.strings.push_back(to.strings.back());
                 continue;
             }
-            auto strung = got(tuned(stringOf(from, index), detune, tuning_, instrument_), path);
+            auto strung = got(tuned(stringOf(from, index), detune, tuning_, instrument_, partialCount_), path);
             if (!strung)
                 return;
             const double atTuning = strung->partials.frequency(1) / ratio(detune);
@@ -283,6 +284,7 @@ private:
 
     const Instrument& instrument_;
     const Adjustments& adjustments_;
+    int partialCount_;
     tuning::Tuning tuning_;
     Described described_;
     Problems problems_;
@@ -290,8 +292,8 @@ private:
 
 } // namespace
 
-Result<Described, Problems> describe(const Instrument& instrument, const Adjustments& adjustments) {
-    return Describing(instrument, adjustments).describe();
+Result<Described, Problems> describe(const Instrument& instrument, const Adjustments& adjustments, int partialCount) {
+    return Describing(instrument, adjustments, partialCount).describe();
 }
 
 } // namespace hitchpin::document

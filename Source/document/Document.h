@@ -46,6 +46,9 @@ struct Described {
     std::vector<std::string> notHeardYet; ///< what the file says and the sound does not follow yet, a sentence each
 };
 
-Result<Described, Problems> describe(const Instrument&, const Adjustments& = {});
+/// @param partialCount how many partials of a string are solved where there is no closed form (windings with bare
+/// ends): what the sound needs by default; a schedule of a thousand courses asks for fewer.
+Result<Described, Problems> describe(const Instrument&, const Adjustments& = {},
+                                     int partialCount = string::defaultPartialCount);
 
 } // namespace hitchpin::document

@@ -9,8 +9,6 @@ namespace hitchpin::report {
 
 namespace {
 
-constexpr int partialsListed = 16;
-
 std::string coreInWords(const string::Core& core) {
     return core.material.name + " " + measure(core.diameter * 1e3) + " mm" +
            (core.shape == string::CoreShape::hex ? " hex" : "");

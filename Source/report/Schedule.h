@@ -8,6 +8,11 @@
 
 namespace hitchpin::report {
 
+/// Partials that a row lists.
+inline constexpr int partialsListed = 16;
+/// Partials that document::describe should solve so that those are good to a tenth of a cent.
+inline constexpr int partialsForSchedule = 24;
+
 struct ScheduleRow {
     std::string note;
     double pitchHz = 0.0;

@@ -108,9 +108,8 @@ std::vector<double> ratiosOverF0(double inharmonicity, const Ends& ends, const M
 }
 
 double firstRatio(double inharmonicity, const Ends& ends, const MassSteps& steps) {
-    // Twelve partials carry sines enough for the first one.
     if (!steps.empty())
-        return ratiosOverF0(inharmonicity, ends, steps, 12).front();
+        return ratiosOverF0(inharmonicity, ends, steps, 1).front();
     return partialRatios(inharmonicity, ends, 1).front();
 }
 
