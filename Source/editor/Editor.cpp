@@ -75,6 +75,7 @@ Editor::Editor(plugin::Processor& owner)
     setResizable(true, true);
     setResizeLimits(760, 560, 3200, 2400);
     setSize(1240, 780);
+    putOutSeen_ = owner.meters().stringsPutOut.load(std::memory_order_relaxed);
     refresh();
     startTimerHz(20);
 }

@@ -272,9 +272,9 @@ void Processor::makeBlock(juce::AudioBuffer<float>& buffer, const juce::MidiBuff
     if (isNonRealtime())
         return; // there is time enough
     const double tooMany = loadWatch_.took(took, frames);
-    if (tooMany <= 0.0 || ringing == 0)
-        return;
-    const int toPutOut = std::clamp(static_cast<int>(std::ceil(tooMany * ringing)), 1, ringing);
+    if (tooMany <= 0.0 || ringing < 2)
+        return; // the last string always sounds
+    const int toPutOut = std::clamp(static_cast<int>(std::ceil(tooMany * ringing)), 1, ringing - 1);
     int putOut = 0;
     // The newest player's strings go last: the others only ring out.
     relay_.forEach([&](PreparedPlayer& prepared) {

@@ -17,7 +17,8 @@ bool isPedalDown(double value) { return value >= 64.0; } // MIDI 1.0: 64…127 i
 } // namespace
 
 Player::Player(std::shared_ptr<const design::InstrumentDesign> design, Rules rules)
-    : engine_(std::move(design)), rules_(std::move(rules)), courses_(engine_.design().courses.size()) {
+    : engine_(std::move(design)), rules_(std::move(rules)), courses_(engine_.design().courses.size()),
+      byEnergy_(engine_.design().strings.size()) {
     reset();
 }
 
@@ -228,27 +229,17 @@ KeyState Player::keyState(int key) const noexcept {
 // What sounds ----------------------------------------------------------------------------------------------------
 
 int Player::putOutQuietest(int count) noexcept {
-    const int strings = static_cast<int>(engine_.design().strings.size());
-    int done = 0;
-    // By rising energy without a list to sort: each round finds the least that is over the last one put out.
-    double over = 0.0;
-    while (done < count) {
-        int quietest = -1;
-        double least = 0.0;
-        for (int string = 0; string < strings; ++string) {
-            const double energy = engine_.energy(string);
-            if (energy > over && (quietest < 0 || energy < least)) {
-                quietest = string;
-                least = energy;
-            }
-        }
-        if (quietest < 0)
-            break;
-        engine_.silence(quietest);
-        over = least;
-        ++done;
-    }
-    return done;
+    // Each string's energy is asked once: it costs a walk along its whole line.
+    std::size_t sounding = 0;
+    for (int string = 0; string < static_cast<int>(byEnergy_.size()); ++string)
+        if (const double energy = engine_.energy(string); energy > 0.0)
+            byEnergy_[sounding++] = {energy, string};
+    const std::size_t done = std::min(sounding, static_cast<std::size_t>(std::max(0, count)));
+    std::partial_sort(byEnergy_.begin(), byEnergy_.begin() + static_cast<std::ptrdiff_t>(done),
+                      byEnergy_.begin() + static_cast<std::ptrdiff_t>(sounding));
+    for (std::size_t i = 0; i < done; ++i)
+        engine_.silence(byEnergy_[i].second);
+    return static_cast<int>(done);
 }
 
 bool Player::silent() const noexcept { return engine_.silent(); }

@@ -7,6 +7,7 @@
 #include <array>
 #include <memory>
 #include <span>
+#include <utility>
 #include <vector>
 
 namespace hitchpin::playing {
@@ -116,6 +117,7 @@ private:
     Rules rules_;
     Hand hand_;
     std::vector<Course> courses_;
+    std::vector<std::pair<double, int>> byEnergy_; ///< room for putOutQuietest
     std::array<bool, 16> pedals_{};
     unsigned long takings_ = 0;
 };
