@@ -42,7 +42,11 @@ Editor::Editor(plugin::Processor& owner)
     notesHeading_.setFont(textFont(12.0f));
     notesHeading_.setColour(juce::Label::textColourId, paper::pencil);
     notesHeading_.setText("Notes", juce::dontSendNotification);
-    for (auto* label : {&name_, &summary_, &status_, &notesHeading_}) {
+    keysLegend_.setFont(textFont(12.0f));
+    keysLegend_.setColour(juce::Label::textColourId, paper::pencil);
+    keysLegend_.setJustificationType(juce::Justification::centredRight);
+    keysLegend_.setText("Keys with a bar are stopped at a fret, grey ones have no string", juce::dontSendNotification);
+    for (auto* label : {&name_, &summary_, &status_, &notesHeading_, &keysLegend_}) {
         label->setBorderSize(juce::BorderSize<int>(0));
         addAndMakeVisible(*label);
     }
@@ -127,7 +131,9 @@ void Editor::resized() {
 
     keys_.setBounds(area.removeFromBottom(keysHeight));
     area.removeFromBottom(6);
-    status_.setBounds(area.removeFromBottom(statusHeight));
+    auto status = area.removeFromBottom(statusHeight);
+    keysLegend_.setBounds(status.removeFromRight(handWidth + 30));
+    status_.setBounds(status);
     area.removeFromBottom(6);
 
     auto hand = area.removeFromRight(handWidth);
@@ -203,7 +209,7 @@ void Editor::refreshStatus() {
     const int ringing = meters.ringingStrings.load(std::memory_order_relaxed);
     juce::String text;
     text << ringing << (ringing == 1 ? " string ringing" : " strings ringing") << "    "
-         << juce::roundToInt(100.0 * processor_.load()) << " % of the time that this machine has";
+         << "load " << juce::roundToInt(100.0 * processor_.load()) << " %";
     const bool limits = now < limiterUntil_, overloaded = now < overloadUntil_;
     if (limits)
         text << "    Limiter: held back by " << juce::String(-juce::Decibels::gainToDecibels(limiterGain_), 1)

@@ -30,7 +30,7 @@ private:
 
     plugin::Processor& processor_;
     Paper paper_;
-    juce::Label name_, summary_, status_, notesHeading_;
+    juce::Label name_, summary_, status_, notesHeading_, keysLegend_;
     juce::ComboBox presets_;
     juce::TextButton load_{"Load"}, save_{"Save"}, silence_{"Silence"};
     ScheduleTable schedule_;
