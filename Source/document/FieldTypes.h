@@ -113,7 +113,7 @@ void readValue(Reading& reading, const juce::var& value, const std::string& path
             return wrong();
         const auto count = static_cast<std::size_t>(list->size());
         if (count < allowed.fewest || count > allowed.most)
-            return reading.add(path, " has " + std::to_string(count) + " entries: must be from " +
+            return reading.add(path, " has " + std::to_string(count) + (count == 1 ? " entry" : " entries") + ": must be from " +
                                          std::to_string(allowed.fewest) + " to " + std::to_string(allowed.most));
         to.resize(count);
         // What stands in a list is whole, but for the entries of `each`.

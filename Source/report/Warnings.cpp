@@ -11,17 +11,21 @@ namespace {
 
 std::string percent(double share) { return fixed(100.0 * share, 0) + " %"; }
 
-/// At a held pitch T = 4μL²f²: tension, and the share with it, goes with the square of length and of frequency.
-double lengthForShare(const string::Strung& strung, double share) {
-    return strung.description.speakingLength * std::sqrt(share / strung.statics.breakingShare);
-}
-
+/// What keeps the string within a share: at its pitch a shorter length, at its length a lower pitch, each from the
+/// string at that tension (a string far over it is thinner by its stretch, so no rule of squares would do).
 std::string advice(const string::Strung& strung, double share) {
     const bool plain = strung.description.build.windings.empty();
-    const double semitones = 6.0 * std::log2(strung.statics.breakingShare / share);
-    std::string words = "within " + percent(share) + " at this pitch it may speak " +
-                        fixed(std::floor(lengthForShare(strung, share) * 1e3), 0) + " mm, at this length " +
-                        fixed(std::ceil(semitones * 10.0) / 10.0, 1) + " semitones lower; or take a stronger material";
+    const double tension = share * strung.statics.breakingLoad, pitch = strung.partials.frequency(1);
+    const auto shorter = string::cutToPitch(strung.description, pitch, tension, 1);
+    const auto lower = string::strungToTension(strung.description, tension, 1);
+    std::string words = "within " + percent(share);
+    if (shorter)
+        words += " at this pitch it may speak " +
+                 fixed(std::floor(shorter->description.speakingLength * 1e3), 0) + " mm,";
+    if (lower)
+        words += " at this length " +
+                 fixed(std::ceil(120.0 * std::log2(pitch / lower->partials.frequency(1))) / 10.0, 1) + " semitones lower;";
+    words += " or take a stronger material";
     // Stress of a plain string is 4ρL²f², whatever its gauge, and thicker wire is weaker.
     words += plain ? " (a thicker string would not help)" : " or a lighter winding";
     return words;
@@ -110,7 +114,10 @@ std::vector<std::string> breakWarnings(const design::InstrumentDescription& inst
         const auto where = "break from " + low.name + " to " + high.name + " (" + what + "): ";
         const auto &a = first(low).statics, &b = first(high).statics;
         if (const double jump = b.tension / a.tension - 1.0; factor(a.tension, b.tension) - 1.0 > breakTensionJump)
-            warnings.push_back(where + "tension jumps by " + fixed(100.0 * jump, 0) + " %, from " +
+            warnings.push_back(where + "tension jumps by " +
+                               (std::abs(jump) < 1.0 ? fixed(100.0 * jump, 0) + " %"
+                                                     : "a factor of " + threeDigits(b.tension / a.tension)) +
+                               ", from " +
                                threeDigits(a.tension) + " N to " + threeDigits(b.tension) + " N a string");
         if (a.inharmonicity > 0 && b.inharmonicity > 0 &&
             factor(a.inharmonicity, b.inharmonicity) > breakInharmonicityFactor)
