@@ -19,6 +19,8 @@ constexpr int mostPartials = 120;
 /// A place that is no simple fraction, so that no partial within the table has a node there.
 constexpr double pluckedAt = 0.0517;
 constexpr double shortest = 2.0, longest = 12.0; // s of sound
+/// What falls by 60 dB within so few periods has no pitch to measure.
+constexpr double fewestPeriods = 30.0;
 
 /// The course that a key takes: the highest open one at or below it within its frets.
 const design::CourseDescription* courseFor(const design::InstrumentDescription& instrument, int key) {
@@ -102,8 +104,8 @@ Exit run(const Arguments& arguments) {
     for (std::size_t i = 0; i < expected.size(); ++i) {
         const int n = static_cast<int>(i) + 1;
         std::cout << juce::String(n).paddedLeft(' ', 4) << column(expected[i], 3, 13);
-        if (measured[i].frequency <= 0.0) {
-            std::cout << "     not found\n";
+        if (measured[i].frequency <= 0.0 || expected[i] * partials.t60(n) < fewestPeriods) {
+            std::cout << "  dies too soon or lies too high to be measured\n";
             ++notFound;
             continue;
         }
@@ -123,7 +125,7 @@ Exit run(const Arguments& arguments) {
     std::cout << "\nWorst within that range: " << juce::String(worstCents, 4) << " cent (partial " << worstAt
               << "), ring time " << juce::String(100.0 * worstT60, 2) << " % up to 6 kHz.";
     if (notFound > 0)
-        std::cout << " " << notFound << " partials died too soon or lie too high to be measured.";
+        std::cout << " Not measured: " << notFound << ".";
     std::cout << "\n";
     return well;
 }

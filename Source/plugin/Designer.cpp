@@ -1,19 +1,40 @@
 #include "Source/plugin/Designer.h"
 
 #include <algorithm>
+#include <chrono>
+
+#if defined(__linux__)
+#include <sys/resource.h>
+#include <sys/syscall.h>
+#include <unistd.h>
+#endif
 
 namespace hitchpin::plugin {
 
 namespace {
-constexpr int millisecondsBetweenLooks = 10;
+
+constexpr auto betweenLooks = std::chrono::milliseconds(10);
+
+/// Designs give way to sound and window. On Linux a nice value belongs to a thread; elsewhere the thread is left
+/// as it is.
+void lowerOwnPriority() {
+#if defined(__linux__)
+    constexpr int nice = 10;
+    setpriority(PRIO_PROCESS, static_cast<id_t>(syscall(SYS_gettid)), nice);
+#endif
 }
 
-Designer::Designer() : juce::Thread("Hitchpin designer") { startThread(Priority::low); }
+} // namespace
+
+Designer::Designer() : thread_([this] { run(); }) {}
 
 Designer::~Designer() {
-    signalThreadShouldExit();
-    wake();
-    stopThread(-1); // every task has left, so nothing long is in hand
+    {
+        const std::lock_guard guard(lock_);
+        ending_ = true;
+    }
+    woken_.notify_all();
+    thread_.join(); // every task has left, so nothing long is in hand
 }
 
 void Designer::join(Task& task) {
@@ -30,30 +51,32 @@ void Designer::leave(Task& task) {
     finished_.wait(guard, [&] { return atWork_ != &task; });
 }
 
-void Designer::wake() { notify(); }
+void Designer::wake() {
+    {
+        const std::lock_guard guard(lock_);
+        wakeAsked_ = true;
+    }
+    woken_.notify_all();
+}
 
 void Designer::run() {
+    lowerOwnPriority();
     std::vector<Task*> round;
-    while (!threadShouldExit()) {
-        {
-            const std::lock_guard guard(lock_);
-            round = tasks_;
-        }
+    std::unique_lock guard(lock_);
+    while (!ending_) {
+        wakeAsked_ = false;
+        round = tasks_;
         for (Task* task : round) {
-            {
-                const std::lock_guard guard(lock_);
-                if (std::find(tasks_.begin(), tasks_.end(), task) == tasks_.end())
-                    continue; // it left meanwhile
-                atWork_ = task;
-            }
+            if (std::find(tasks_.begin(), tasks_.end(), task) == tasks_.end())
+                continue; // it left meanwhile
+            atWork_ = task;
+            guard.unlock();
             task->work();
-            {
-                const std::lock_guard guard(lock_);
-                atWork_ = nullptr;
-            }
+            guard.lock();
+            atWork_ = nullptr;
             finished_.notify_all();
         }
-        wait(millisecondsBetweenLooks);
+        woken_.wait_for(guard, betweenLooks, [this] { return wakeAsked_ || ending_; });
     }
 }
 
