@@ -469,8 +469,12 @@ void Engine::silence(int index) noexcept {
 }
 
 void Engine::listen(const Listening& listening) noexcept {
-    if (std::isfinite(listening.angle) && std::isfinite(listening.spread))
-        running_->setListening({listening.angle, std::clamp(listening.spread, 0.0, 1.0)});
+    if (!std::isfinite(listening.angle) || !std::isfinite(listening.spread))
+        return;
+    // Hosts say where they listen at every block: only a change moves anything.
+    const Listening wanted{listening.angle, std::clamp(listening.spread, 0.0, 1.0)};
+    if (wanted != running_->listening)
+        running_->setListening(wanted);
 }
 
 void Engine::process(double* left, double* right, int frames) noexcept {

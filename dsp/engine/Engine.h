@@ -22,6 +22,7 @@ struct Listening {
     /// 0: both sides alike, each the plain sum; 1: the ends of a bridge lie fully left and right. In between with
     /// constant power.
     double spread = 0.0;
+    bool operator==(const Listening&) const = default;
 };
 
 /// Constructing allocates; afterwards every call is real-time safe: no lock, no heap, no exception, no log.

@@ -88,6 +88,22 @@ TEST_CASE("Blocks of any size give bit identical sound", "[engine]") {
     }
 }
 
+// Turned red by: a listener who starts to move again each time it is told where it already is.
+TEST_CASE("Saying again where one listens changes nothing", "[engine]") {
+    Engine once(coupled()), often(coupled());
+    std::vector<double> a(9600), b(9600);
+    for (Engine* engine : {&once, &often}) {
+        engine->listen({0.9, 0.6});
+        engine->pluck(0, {2.0, 0.2, 0.003, 0.8});
+    }
+    once.process(a.data(), nullptr, 9600);
+    for (int done = 0; done < 9600; done += 96) {
+        often.listen({0.9, 0.6});
+        often.process(b.data() + done, nullptr, 96);
+    }
+    CHECK(std::memcmp(a.data(), b.data(), a.size() * sizeof(double)) == 0);
+}
+
 // Turned red by: any state that reset forgets.
 TEST_CASE("Reset equals fresh to the last bit", "[engine]") {
     Engine fresh(coupled());
