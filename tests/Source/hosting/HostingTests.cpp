@@ -159,3 +159,29 @@ TEST_CASE("several hosted instances live side by side and close in any order") {
     instances.erase(instances.begin() + 1);
     CHECK(peak(render(*instances[0], [](int) {}), 0, 188 * block) > 0.0f);
 }
+
+TEST_CASE("a hosted window opens and closes while strings sound and changes nothing of it") {
+    const std::string kind = GENERATE("VST3", "LV2");
+    CAPTURE(kind);
+    auto plain = openBuilt(kind);
+    plain->prepareToPlay(rate, block);
+    const auto expected = render(*plain, [](int) {});
+
+    auto instance = openBuilt(kind);
+    instance->prepareToPlay(rate, block);
+    REQUIRE(instance->hasEditor());
+    std::unique_ptr<juce::AudioProcessorEditor> editor;
+    int opened = 0;
+    const auto sound = render(*instance, [&](int i) {
+        if (i % 40 == 10) {
+            editor.reset(instance->createEditorIfNeeded());
+            REQUIRE(editor != nullptr);
+            opened += editor->getWidth() > 0 && editor->getHeight() > 0 ? 1 : 0;
+        } else if (i % 40 == 30) {
+            editor.reset();
+        }
+    });
+    editor.reset();
+    CHECK(opened == 5);
+    CHECK((sound == expected));
+}

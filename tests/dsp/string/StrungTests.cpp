@@ -77,6 +77,23 @@ TEST_CASE("Six plain strings have the figures of the closed forms", "[string]") 
     }
 }
 
+// Young, JASA 24(3) (1952): cents of inharmonicity δ = 3.4e13·n²d²/(ν0²l⁴), d and l in cm, for E/ρ = 25.5e10 cm²/s²; the
+// coefficient is 3.40397e13 in 40-digit arithmetic. Mean of six pianos: 1.2 cents at n = 2 of middle C, which is
+// B = 3.466e-4.
+TEST_CASE("Young's coefficient of inharmonicity is this library's B", "[string]") {
+    const auto d = plain(material(7850, 25.5e6 * 7850 * 1e-9), 1.0, 0.62);
+    const auto s = strungToTension(d, 650.0);
+    REQUIRE(s);
+    const double nu0 = s->partials.harmonicF0();
+    for (int n = 1; n <= 4; ++n) {
+        const double young = 3.40397e13 * n * n * 0.1 * 0.1 / (nu0 * nu0 * std::pow(62.0, 4));
+        const double firstOrder = 600.0 / std::log(2.0) * s->statics.inharmonicity * n * n;
+        CHECK(firstOrder == Approx(young).epsilon(1e-5));
+        CHECK(cents(s->partials.frequency(n), n * nu0) == Approx(young).epsilon(s->statics.inharmonicity * n * n));
+    }
+    CHECK(600.0 / std::log(2.0) * 3.466e-4 * 4 == Approx(1.2).epsilon(1e-3));
+}
+
 TEST_CASE("Stress does not depend on the gauge of a plain string", "[string]") {
     const auto thin = strungToPitch(plain(material(7850, 1e-6), 0.3, 0.62), 261.6256);
     const auto thick = strungToPitch(plain(material(7850, 1e-6), 1.2, 0.62), 261.6256);
