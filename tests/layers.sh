@@ -21,6 +21,7 @@ declare -A allowed=(
     [Source/editor]='dsp/|Source/(document|report|plugin|editor)/|juce_|PresetData\.h'
 )
 
+included='[<"]([^>"]+)[>"]'
 broken=0
 files=0
 for folder in "${!allowed[@]}"; do
@@ -28,7 +29,8 @@ for folder in "${!allowed[@]}"; do
     while IFS= read -r file; do
         files=$((files + 1))
         while IFS= read -r line; do
-            path=$(sed -E 's/.*[<"]([^>"]+)[>"].*/\1/' <<<"$line")
+            [[ "$line" =~ $included ]] || continue
+            path=${BASH_REMATCH[1]}
             # The standard library and the system have no folder in their names, or one of these.
             [[ "$path" =~ ^[a-z_0-9]+(\.h)?$ || "$path" =~ ^sys/ ]] && continue
             if ! [[ "$path" =~ ^(${allowed[$folder]}) ]]; then
