@@ -7,6 +7,8 @@
 #include <iostream>
 #include <sstream>
 
+#include <X11/Xlib.h>
+
 namespace {
 
 constexpr double rate = 48000.0;
@@ -174,6 +176,9 @@ TEST_CASE("a hosted window opens and closes while strings sound and changes noth
     int opened = 0;
     const auto sound = render(*instance, [&](int i) {
         if (i % 40 == 10) {
+            // As JUCE's own applications do, and again since a plug-in that goes puts X's default back: on a screen
+            // without a window manager some names that JUCE sets on windows do not exist, and X would end the program.
+            XSetErrorHandler([](Display*, XErrorEvent*) { return 0; });
             editor.reset(instance->createEditorIfNeeded());
             REQUIRE(editor != nullptr);
             opened += editor->getWidth() > 0 && editor->getHeight() > 0 ? 1 : 0;
