@@ -311,7 +311,10 @@ TEST_CASE("An interrupt leaves no file", "[console]") {
             execl(HITCHPIN_CONSOLE, "hitchpin", "sound", "wire.json", "--note", "A2", "--seconds", "3600", "--out", "a.wav", static_cast<char*>(nullptr));
         _exit(99);
     }
-    usleep(700000);
+    // When the file that is written beside the target appears, the work is under way.
+    for (int i = 0; i < 1000 && shop.files() < 2; ++i)
+        usleep(10000);
+    CHECK(shop.files() == 2);
     kill(child, SIGINT);
     int status = 0;
     waitpid(child, &status, 0);
