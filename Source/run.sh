@@ -2,14 +2,10 @@
 # Builds Hitchpin and does its main job once: the schedule of a preset, the audition of its scale as a WAV, and,
 # where there is a display, the app. Usage: bash Source/run.sh [INSTRUMENT.json]
 set -euo pipefail
+[ $# -eq 0 ] || set -- "$(realpath -- "$1")"
 cd "$(dirname "$0")/.."
 
-bash Source/packages.sh
-# The compiler cache lies outside the project and serves every checkout of it, wherever that stands.
-export CCACHE_BASEDIR=$PWD CCACHE_NOHASHDIR=true
-echo "Configuring and building (the first time takes some minutes) ..."
-cmake --preset release >build-configure.log 2>&1 || { cat build-configure.log >&2; exit 1; }
-mv build-configure.log build/configure.log
+source Source/configure.sh
 cmake --build build --target hitchpin_console HitchpinPlugin_Standalone
 
 instrument=${1:-presets/lap-harp.json}

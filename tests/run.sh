@@ -3,12 +3,7 @@
 set -euo pipefail
 cd "$(dirname "$0")/.."
 
-bash Source/packages.sh
-# The compiler cache lies outside the project and serves every checkout of it, wherever that stands.
-export CCACHE_BASEDIR=$PWD CCACHE_NOHASHDIR=true
-echo "Configuring and building everything (the first time takes some minutes) ..."
-cmake --preset release >build-configure.log 2>&1 || { cat build-configure.log >&2; exit 1; }
-mv build-configure.log build/configure.log
+source Source/configure.sh
 cmake --build build
 
 echo "Running the tests ..."

@@ -17,14 +17,10 @@ public:
     void flush() override { stream_.flush(); }
     bool setPosition(juce::int64 position) override { return stream_.setPosition(position); }
     juce::int64 getPosition() override { return stream_.getPosition(); }
-    bool write(const void* data, std::size_t size) override {
-        well_ = stream_.write(data, size) && well_;
-        return well_;
-    }
+    bool write(const void* data, std::size_t size) override { return stream_.write(data, size); }
 
 private:
     juce::OutputStream& stream_;
-    bool well_ = true;
 };
 
 bool pour(juce::OutputStream& out, const AudioFileFormat& format, const Source& source, Written& written) {

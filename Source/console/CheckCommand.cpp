@@ -4,8 +4,8 @@
 #include "Source/report/Schedule.h"
 #include "dsp/tuning/Notes.h"
 
+#include <array>
 #include <iostream>
-#include <set>
 
 namespace hitchpin::console {
 
@@ -23,15 +23,18 @@ void list(const std::string& heading, const std::vector<std::string>& lines) {
         std::cout << "  " << line << "\n";
 }
 
-/// Runs of neighbouring keys: "C2-E2, G2".
-std::string runs(const std::set<int>& keys) {
+/// Runs of neighbouring keys in that state: "C2-E2, G2".
+std::string runs(const std::array<playing::KeyState, 128>& states, playing::KeyState wanted) {
+    const auto is = [&](int key) { return key < 128 && states[static_cast<std::size_t>(key)] == wanted; };
     std::string text;
-    for (auto key = keys.begin(); key != keys.end();) {
-        int last = *key;
-        const int first = last;
-        while (++key != keys.end() && *key == last + 1)
-            last = *key;
+    for (int first = 0; first < 128; ++first) {
+        if (!is(first))
+            continue;
+        int last = first;
+        while (is(last + 1))
+            ++last;
         text += (text.empty() ? "" : ", ") + tuning::noteName(first) + (last > first ? "-" + tuning::noteName(last) : "");
+        first = last;
     }
     return text;
 }
@@ -42,21 +45,16 @@ Exit run(const Arguments& arguments) {
         return failed;
     const auto& courses = read->described.instrument.courses;
     std::size_t strings = 0;
-    std::set<int> open, stopped;
-    for (const auto& course : courses) {
+    for (const auto& course : courses)
         strings += course.strings.size();
-        open.insert(course.key);
-        for (int fret = 1; fret <= course.frets; ++fret)
-            stopped.insert(course.key + fret);
-    }
-    for (const int key : open)
-        stopped.erase(key);
+    const auto states = playing::keyStates(read->described.instrument);
+    const auto open = runs(states, playing::KeyState::open), stopped = runs(states, playing::KeyState::stopped);
     std::cout << (read->instrument.name.empty() ? std::string("the instrument") : read->instrument.name) << ": "
               << counted(courses.size(), "course", "courses") << ", " << counted(strings, "string", "strings")
               << "; the file is well formed.\n";
-    std::cout << "keys that sound an open course: " << runs(open) << "\n";
+    std::cout << "keys that sound an open course: " << open << "\n";
     if (!stopped.empty())
-        std::cout << "keys that sound a stopped one: " << runs(stopped) << "\n";
+        std::cout << "keys that sound a stopped one: " << stopped << "\n";
 
     const auto schedule = report::makeSchedule(read->instrument, read->described);
     std::vector<std::string> marks;

@@ -3,7 +3,7 @@
 #include "Source/console/Reading.h"
 #include "dsp/analysis/Measure.h"
 #include "dsp/engine/Engine.h"
-#include "dsp/tuning/Notes.h"
+#include "dsp/playing/Player.h"
 
 #include <cmath>
 #include <iostream>
@@ -26,7 +26,7 @@ constexpr double fewestPeriods = 30.0;
 const design::CourseDescription* courseFor(const design::InstrumentDescription& instrument, int key) {
     const design::CourseDescription* best = nullptr;
     for (const auto& course : instrument.courses)
-        if (key >= course.key && key - course.key <= course.frets && (best == nullptr || course.key > best->key))
+        if (playing::keyStateOf(key, course.key, course.frets) != playing::KeyState::silent && (best == nullptr || course.key > best->key))
             best = &course;
     return best;
 }
@@ -49,21 +49,20 @@ juce::String column(double value, int decimals, int width) {
 
 Exit run(const Arguments& arguments) {
     const auto& command = partialsCommand();
-    const auto note = arguments.text("--note");
-    if (!note)
+    if (!arguments.has("--note"))
         return wrongCall(command, "--note N is needed: which string");
-    const auto key = tuning::noteNumber(*note);
+    const auto key = keyFrom(arguments);
     if (!key)
-        return wrongCall(command, "--note = " + *note + ": must be a note from C-1 to G9, as A3, F#2 or Bb4");
-    const auto quality = arguments.text("--quality").value_or("reference");
-    if (quality != "live" && quality != "reference")
-        return wrongCall(command, "--quality = " + quality + ": must be live or reference");
+        return wrongCall(command, key.error().message);
+    const auto quality = qualityFrom(arguments);
+    if (!quality)
+        return wrongCall(command, quality.error().message);
     const auto read = readInstrument(arguments.file());
     if (!read)
         return failed;
     const auto* course = courseFor(read->described.instrument, *key);
     if (course == nullptr) {
-        say("--note = " + *note + ": no course of this instrument sounds it (hitchpin check lists the keys)");
+        sayOutOfReach(arguments);
         return failed;
     }
     auto string = string::stoppedAt(course->strings.front(), std::exp2((course->key - *key) / 12.0));
@@ -76,9 +75,7 @@ Exit run(const Arguments& arguments) {
     for (int n = 1; n <= mostPartials && (n == 1 || partials.frequency(n) <= highestHz); ++n)
         expected.push_back(partials.frequency(n));
 
-    const auto design = design::makeInstrument(
-        alone(*course, std::move(string).value()),
-        {sampleRate, quality == "live" ? design::Quality::live : design::Quality::reference});
+    const auto design = design::makeInstrument(alone(*course, std::move(string).value()), {sampleRate, *quality});
     if (!design) {
         say(design.error().message);
         return failed;
@@ -92,7 +89,7 @@ Exit run(const Arguments& arguments) {
 
     const auto& report = (*design)->strings[0].stops[0].loop.accuracy;
     std::cout << course->name << (course->key < *key ? " stopped at fret " + std::to_string(*key - course->key) : "")
-              << ", one string alone between its ends, " << quality << " quality, "
+              << ", one string alone between its ends, " << (*quality == design::Quality::live ? "live" : "reference") << " quality, "
               << (*design)->strings[0].stops[0].loop.sections.size() << " allpass sections\n"
               << "B = " << juce::String(partials.inharmonicity(), 3, true) << ", F0 = "
               << juce::String(partials.harmonicF0(), 3) << " Hz; made to be true up to "

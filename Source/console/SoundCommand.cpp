@@ -4,7 +4,6 @@
 #include "Source/console/Reading.h"
 #include "dsp/playing/MidiEvents.h"
 #include "dsp/playing/Player.h"
-#include "dsp/tuning/Notes.h"
 
 #include <algorithm>
 #include <cmath>
@@ -148,13 +147,16 @@ Exit run(const Arguments& arguments) {
                                       (flac ? ": must be 16 or 24 in FLAC" : ": must be 16, 24 or 32"));
     if (*rate != std::floor(*rate))
         return wrongCall(command, "--rate = " + *arguments.text("--rate") + ": must be a whole number of Hz");
-    const auto quality = arguments.text("--quality").value_or("reference");
-    if (quality != "live" && quality != "reference")
-        return wrongCall(command, "--quality = " + quality + ": must be live or reference");
-    const auto note = arguments.text("--note");
-    const auto key = note ? tuning::noteNumber(*note) : std::nullopt;
-    if (note && !key)
-        return wrongCall(command, "--note = " + *note + ": must be a note from C-1 to G9, as A3, F#2 or Bb4");
+    const auto quality = qualityFrom(arguments);
+    if (!quality)
+        return wrongCall(command, quality.error().message);
+    std::optional<int> key;
+    if (arguments.has("--note")) {
+        const auto named = keyFrom(arguments);
+        if (!named)
+            return wrongCall(command, named.error().message);
+        key = *named;
+    }
 
     const auto read = readInstrument(arguments.file());
     if (!read)
@@ -170,8 +172,7 @@ Exit run(const Arguments& arguments) {
     }
 
     const AudioFileFormat format{*rate, static_cast<int>(*bits), flac};
-    const design::LoopSettings settings{format.sampleRate,
-                                        quality == "live" ? design::Quality::live : design::Quality::reference};
+    const design::LoopSettings settings{format.sampleRate, *quality};
     auto design = [&] {
         LongWork work("designing");
         return design::makeInstrument(read->described.instrument, settings,
@@ -183,7 +184,7 @@ Exit run(const Arguments& arguments) {
     }
     playing::Player player(*design, read->described.rules);
     if (key && player.keyState(*key) == playing::KeyState::silent) {
-        say("--note = " + *note + ": no course of this instrument sounds it (hitchpin check lists the keys)");
+        sayOutOfReach(arguments);
         return failed;
     }
     Written written;

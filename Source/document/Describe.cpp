@@ -248,7 +248,6 @@ private:
     void rules() {
         const auto& playing = instrument_.playing;
         auto& rules = described_.rules;
-        rules.with = playing.with == With::plectrum ? playing::PluckedWith::plectrum : playing::PluckedWith::finger;
         rules.width = playing.widthMm * 1e-3;
         rules.force = playing.heightMm ? forceForHeight(*playing.heightMm * 1e-3) : playing.forceN;
         rules.angle = radians(playing.angleDeg);

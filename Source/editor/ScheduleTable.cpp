@@ -1,24 +1,11 @@
 #include "Source/editor/ScheduleTable.h"
 
 #include "Source/editor/Paper.h"
-
-#include <cmath>
+#include "Source/report/Digits.h"
 
 namespace hitchpin::editor {
 
 namespace {
-
-/// `digits` significant ones: a tension is not known better than to three.
-juce::String significant(double value, int digits) {
-    if (!std::isfinite(value) || value == 0.0)
-        return "0";
-    const int before = static_cast<int>(std::floor(std::log10(std::abs(value)))) + 1;
-    const int decimals = std::max(0, digits - before);
-    if (decimals > 0)
-        return juce::String(value, decimals);
-    const double step = std::pow(10.0, before - digits);
-    return juce::String(juce::roundToInt(std::round(value / step) * step));
-}
 
 juce::String wordsOf(const report::ScheduleRow& row) {
     juce::StringArray words;
@@ -44,7 +31,7 @@ const std::array<Column, warningsColumn> columns{{
     {"Length mm", 56, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
     {" Core", 136, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
     {" Windings", 166, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
-    {"Tension N", 58, [](const report::ScheduleRow& r) { return significant(r.tensionN, 3); }},
+    {"Tension N", 58, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.tensionN)); }},
     {"Share of breaking", 60, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
     {"Semitones to breaking", 68, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
     {" Warnings", 150, wordsOf},

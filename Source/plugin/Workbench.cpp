@@ -2,7 +2,6 @@
 
 #include "dsp/design/InstrumentDesign.h"
 
-#include <algorithm>
 #include <chrono>
 
 namespace hitchpin::plugin {
@@ -118,11 +117,7 @@ void Workbench::work() {
     }
     view->schedule = report::makeSchedule(*instrument, *described);
     view->notHeardYet = described->notHeardYet;
-    for (const auto& course : described->instrument.courses)
-        for (int key = 0; key < 128; ++key) {
-            auto& state = view->keys[static_cast<std::size_t>(key)];
-            state = std::max(state, playing::keyStateOf(key, course.key, course.frets));
-        }
+    view->keys = playing::keyStates(described->instrument);
     if (wanted.sampleRate > 0.0) {
         const auto design = design::makeInstrument(described->instrument, {wanted.sampleRate, design::Quality::live},
                                                    [&](double) { return stillWanted(); });

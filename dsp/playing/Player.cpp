@@ -219,6 +219,16 @@ int Player::courseFor(int key, int channel) const noexcept {
     return best;
 }
 
+std::array<KeyState, 128> keyStates(const design::InstrumentDescription& instrument) {
+    std::array<KeyState, 128> states{};
+    for (const design::CourseDescription& course : instrument.courses)
+        for (int key = 0; key < 128; ++key) {
+            KeyState& state = states[static_cast<std::size_t>(key)];
+            state = std::max(state, keyStateOf(key, course.key, course.frets));
+        }
+    return states;
+}
+
 KeyState Player::keyState(int key) const noexcept {
     KeyState state = KeyState::silent;
     for (const design::CourseDesign& course : engine_.design().courses)

@@ -15,8 +15,6 @@ namespace hitchpin::playing {
 /// Peak of the sound in newtons of bridge force that is written as digital full scale.
 inline constexpr double fullScaleNewtons = 20.0;
 
-enum class PluckedWith { finger, plectrum };
-
 /// How keys take courses. asBuilt: the nearest course at or below within its frets, notes together shared out so
 /// that they take different courses: a course that no key holds before one that is held, then the highest open one,
 /// then the one whose last note is longest ago. A repeated note takes its own course again. Where every course that
@@ -31,7 +29,6 @@ struct VelocityPoint {
 
 /// How this instrument is played by default.
 struct Rules {
-    PluckedWith with = PluckedWith::finger;
     double width = 0.003;   ///< m
     double force = 2.0;     ///< N at factor 1
     double angle = 0.7853981633974483; ///< rad from across towards into
@@ -67,6 +64,9 @@ constexpr KeyState keyStateOf(int key, int openKey, int frets) noexcept {
            : key > openKey && key - openKey <= frets ? KeyState::stopped
                                                        : KeyState::silent;
 }
+
+/// Of all keys, for an instrument that need not be designed yet.
+std::array<KeyState, 128> keyStates(const design::InstrumentDescription&);
 
 /// Real-time safe after construction, as the engine. One thread at a time.
 class Player {

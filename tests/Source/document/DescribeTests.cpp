@@ -1,6 +1,7 @@
 // From the workshop's units to physics.
 #include "Source/document/Document.h"
 #include "Source/report/Schedule.h"
+#include "dsp/analysis/Measure.h"
 
 #include <catch2/catch.hpp>
 
@@ -10,6 +11,7 @@
 #include <iostream>
 
 using namespace hitchpin;
+using hitchpin::analysis::centsBetween;
 
 namespace {
 
@@ -28,7 +30,6 @@ juce::String course(const juce::String& pitch, const juce::String& rest = {}) {
     return "{" + pitch + R"(, "speaking_length_mm": 650, "core": {"material": "music wire", "diameter_mm": 0.4})" + rest + "}";
 }
 
-double cents(double f, double reference) { return 1200.0 * std::log2(f / reference); }
 double first(const document::Described& d, std::size_t at = 0, std::size_t string = 0) {
     return d.instrument.courses.at(at).strings.at(string).partials.frequency(1);
 }
@@ -37,9 +38,9 @@ constexpr double exact = 1e-6; // cents
 } // namespace
 
 TEST_CASE("Pitch is given by note, in hertz or by tension", "[document]") {
-    CHECK(std::abs(cents(first(described(course(R"("note": "A3")"))), 220.0)) < exact);
-    CHECK(std::abs(cents(first(described(course(R"("note": "A3")", R"(, "cents": -30)"))), 220.0) + 30.0) < exact);
-    CHECK(std::abs(cents(first(described(course(R"("pitch_hz": 201.5)"))), 201.5)) < exact);
+    CHECK(std::abs(centsBetween(first(described(course(R"("note": "A3")"))), 220.0)) < exact);
+    CHECK(std::abs(centsBetween(first(described(course(R"("note": "A3")", R"(, "cents": -30)"))), 220.0) + 30.0) < exact);
+    CHECK(std::abs(centsBetween(first(described(course(R"("pitch_hz": 201.5)"))), 201.5)) < exact);
     const auto byTension = described(course(R"("tension_n": 80)"));
     CHECK(byTension.instrument.courses[0].strings[0].statics.tension == Approx(80.0).epsilon(1e-12));
     CHECK(byTension.instrument.courses[0].openHz == Approx(first(byTension)).epsilon(1e-9));
@@ -48,9 +49,9 @@ TEST_CASE("Pitch is given by note, in hertz or by tension", "[document]") {
 TEST_CASE("Tuning, temperament and offsets reach the strings", "[document]") {
     const auto d = described(course(R"("note": "E4")") + "," + course(R"("note": "C4")"),
                              R"("tuning": {"a4_hz": 415, "temperament": "quarter-comma meantone"}, )");
-    CHECK(cents(first(d, 0), first(d, 1)) == Approx(386.3137).margin(1e-3));
+    CHECK(centsBetween(first(d, 0), first(d, 1)) == Approx(386.3137).margin(1e-3));
     const auto moved = described(course(R"("note": "A3")"), R"("tuning": {"a4_hz": 442}, )");
-    CHECK(std::abs(cents(first(moved), 221.0)) < exact);
+    CHECK(std::abs(centsBetween(first(moved), 221.0)) < exact);
 }
 
 TEST_CASE("Stretched octaves follow the strings' own inharmonicity", "[document]") {
@@ -61,17 +62,17 @@ TEST_CASE("Stretched octaves follow the strings' own inharmonicity", "[document]
     const auto d = described(stiff("A4", 380) + "," + stiff("A5", 195), R"("tuning": {"stretch": "octaves 4:2"}, )");
     const auto& low = d.instrument.courses[0].strings[0].partials;
     const auto& high = d.instrument.courses[1].strings[0].partials;
-    CHECK(std::abs(cents(high.frequency(2), low.frequency(4))) < 0.01); // B moves with the stretch: iterated
-    CHECK(std::abs(cents(low.frequency(1), 440.0)) < exact);
+    CHECK(std::abs(centsBetween(high.frequency(2), low.frequency(4))) < 0.01); // B moves with the stretch: iterated
+    CHECK(std::abs(centsBetween(low.frequency(1), 440.0)) < exact);
 }
 
 TEST_CASE("Strings of a course may be detuned or differ", "[document]") {
     const auto d = described(course(R"("note": "A3")", R"(, "strings": 2, "detune_cents": [0, 1.5])"));
-    CHECK(cents(first(d, 0, 1), first(d, 0, 0)) == Approx(1.5).margin(exact));
+    CHECK(centsBetween(first(d, 0, 1), first(d, 0, 0)) == Approx(1.5).margin(exact));
     const auto each = described(course(R"("note": "A3")", R"(, "strings": 2, "each": [{}, {"core": {"diameter_mm": 0.45}}])"));
     CHECK(each.instrument.courses[0].strings[1].description.build.core.diameter == Approx(0.45e-3));
     CHECK(each.instrument.courses[0].strings[1].description.build.core.material.name == "music wire");
-    CHECK(std::abs(cents(first(each, 0, 1), first(each, 0, 0))) < exact);
+    CHECK(std::abs(centsBetween(first(each, 0, 1), first(each, 0, 0))) < exact);
 }
 
 // ΔT = −E·S·(α − α_frame)·Δθ on a string tuned at 20 °C.
@@ -87,10 +88,10 @@ TEST_CASE("The climate moves a tuned string", "[document]") {
 
 TEST_CASE("What a host turns acts after tuning", "[document]") {
     const double neutral = first(described(course(R"("note": "A3")")));
-    CHECK(cents(first(described(course(R"("note": "A3")"), {}, {1.0, 1.0, 0.0, 50.0})), neutral) == Approx(50.0).margin(exact));
+    CHECK(centsBetween(first(described(course(R"("note": "A3")"), {}, {1.0, 1.0, 0.0, 50.0})), neutral) == Approx(50.0).margin(exact));
     // T×4 is an octave but for stretch and stiffness, L×½ another.
-    CHECK(cents(first(described(course(R"("note": "A3")"), {}, {4.0, 1.0, 0.0, 0.0})), neutral) == Approx(1200.0).margin(10.0));
-    CHECK(cents(first(described(course(R"("note": "A3")"), {}, {1.0, 0.5, 0.0, 0.0})), neutral) == Approx(1200.0).margin(1.0));
+    CHECK(centsBetween(first(described(course(R"("note": "A3")"), {}, {4.0, 1.0, 0.0, 0.0})), neutral) == Approx(1200.0).margin(10.0));
+    CHECK(centsBetween(first(described(course(R"("note": "A3")"), {}, {1.0, 0.5, 0.0, 0.0})), neutral) == Approx(1200.0).margin(1.0));
 }
 
 TEST_CASE("Every key strung fills the gaps between courses", "[document]") {
@@ -100,7 +101,7 @@ TEST_CASE("Every key strung fills the gaps between courses", "[document]") {
     for (std::size_t i = 0; i < 13; ++i) {
         const auto& c = d.instrument.courses[i];
         CHECK(c.key == 60 + static_cast<int>(i));
-        CHECK(std::abs(cents(c.strings[0].partials.frequency(1), 440.0 * std::exp2((c.key - 69) / 12.0))) < exact);
+        CHECK(std::abs(centsBetween(c.strings[0].partials.frequency(1), 440.0 * std::exp2((c.key - 69) / 12.0))) < exact);
         if (i > 0)
             CHECK(c.strings[0].description.speakingLength < d.instrument.courses[i - 1].strings[0].description.speakingLength);
     }

@@ -1,5 +1,6 @@
 // Where partials lie. Exact ratios: the determinant of the tensioned beam in 40-digit arithmetic; closed forms:
 // Fletcher, JASA 36:203 (1964); a second oracle: beam elements.
+#include "dsp/analysis/Measure.h"
 #include "dsp/string/BareEnds.h"
 #include "dsp/string/FrequencyDeterminant.h"
 #include "dsp/string/Partials.h"
@@ -12,13 +13,13 @@
 #include <iostream>
 
 using namespace hitchpin::string;
+using hitchpin::analysis::centsBetween;
 using hitchpin::support::beamRatios;
 using hitchpin::support::bordersForEnds;
 
 namespace {
 
 constexpr double printed = 6e-9; // the table has eight decimals
-double cents(double f, double reference) { return 1200.0 * std::log2(f / reference); }
 
 Partials uniform(double b, Ends ends = {}, int count = 64) { return {100.0, b, ends, {}, count}; }
 
@@ -54,7 +55,7 @@ TEST_CASE("The partials of a piano's C4 stand where published", "[string]") {
                                            {8, 20.6386}, {10, 32.0352}, {16, 79.7568}, {20, 121.5880}};
     const Partials partials = uniform(3.770189e-4);
     for (const auto& [n, sharp] : rows)
-        CHECK(cents(partials.frequency(n), 100.0 * n) == Approx(sharp).margin(1e-3));
+        CHECK(centsBetween(partials.frequency(n), 100.0 * n) == Approx(sharp).margin(1e-3));
 }
 
 // Fletcher's clamped form is a series in √B; at B = 0.01 and n = 10 it is 11.5 cents sharp, so it must not be used.
@@ -63,7 +64,7 @@ TEST_CASE("The series for clamped ends is good for slender strings and wrong for
         return n * std::sqrt(1.0 + b * n * n) * (1.0 + 2.0 / M_PI * std::sqrt(b) + 4.0 / (M_PI * M_PI) * b);
     };
     const auto error = [&](double b, int n) {
-        return cents(series(b, n), uniform(b, {End::clamped, End::clamped}).frequency(n) / 100.0);
+        return centsBetween(series(b, n), uniform(b, {End::clamped, End::clamped}).frequency(n) / 100.0);
     };
     CHECK(error(1e-4, 1) == Approx(-.0006).margin(1e-4));
     CHECK(error(1e-4, 10) == Approx(-.017).margin(1e-3));
@@ -82,7 +83,7 @@ TEST_CASE("F0 is not f1, and the two textbook forms agree to first order", "[str
     CHECK(partials.frequency(1) == Approx(100.0 * std::sqrt(1.0 + b)).epsilon(1e-14));
     for (int n = 2; n <= 8; ++n) {
         const double rossing = n * partials.frequency(1) * (1.0 + (n * n - 1) * b / 2.0);
-        CHECK(std::abs(cents(rossing, partials.frequency(n))) < 0.05);
+        CHECK(std::abs(centsBetween(rossing, partials.frequency(n))) < 0.05);
     }
 }
 
@@ -98,8 +99,8 @@ TEST_CASE("Beam elements agree with closed form and determinant for every pair o
                 const Partials partials = uniform(b, ends);
                 for (int n = 1; n <= 10; ++n) {
                     const double expected = elements[static_cast<std::size_t>(n - 1)];
-                    const double off = std::max(std::abs(cents(roots[static_cast<std::size_t>(n - 1)], expected)),
-                                                std::abs(cents(partials.frequency(n) / 100.0, expected)));
+                    const double off = std::max(std::abs(centsBetween(roots[static_cast<std::size_t>(n - 1)], expected)),
+                                                std::abs(centsBetween(partials.frequency(n) / 100.0, expected)));
                     if (off > 3e-3)
                         UNSCOPED_INFO("B " << b << " ends " << int(nut) << int(bridge) << " n " << n << ": " << off);
                     worst = std::max(worst, off);
@@ -158,8 +159,8 @@ TEST_CASE("Bare ends of windings agree with beam elements", "[string]") {
         const auto elements = beamRatios(b, {}, 24, bordersOn(places, 260), mass);
         const auto few = steppedRatios(b, steps, 24), many = steppedRatios(b, steps, 128);
         for (std::size_t n = 0; n < 24; ++n) {
-            worst = std::max(worst, std::abs(cents(few[n], elements[n])));
-            worstForSound = std::max(worstForSound, std::abs(cents(many[n], elements[n])));
+            worst = std::max(worst, std::abs(centsBetween(few[n], elements[n])));
+            worstForSound = std::max(worstForSound, std::abs(centsBetween(many[n], elements[n])));
         }
     }
     std::cout << "bare ends, 24 partials against beam elements: worst " << worst << " cent (allowed " << forSchedule
@@ -176,7 +177,7 @@ TEST_CASE("Bare ends move the inharmonicity by tens of per cent and the pitch ha
     std::cout << "15 mm bare at each end of 1.2 m: B " << b << " becomes " << effective << "\n";
     CHECK(effective / b > 1.1);
     CHECK(effective / b < 2.0);
-    CHECK(std::abs(cents(ratios[0], std::sqrt(1.0 + b))) < 0.1);
+    CHECK(std::abs(centsBetween(ratios[0], std::sqrt(1.0 + b))) < 0.1);
     // And where nothing is bare, nothing changes.
     CHECK(effectiveInharmonicity(steppedRatios(b, {}, 24)) == Approx(b).epsilon(1e-9));
 }

@@ -1,5 +1,6 @@
 // Statics: Mersenne's law, stress, wound strings, temperature. Values computed in 40-digit arithmetic from the closed
 // forms, unless another source is named.
+#include "dsp/analysis/Measure.h"
 #include "dsp/string/Strung.h"
 
 #include <catch2/catch.hpp>
@@ -9,11 +10,11 @@
 #include <iostream>
 
 using namespace hitchpin::string;
+using hitchpin::analysis::centsBetween;
 
 namespace {
 
 constexpr double printed = 1e-5; // tables with five or six digits
-double cents(double f, double reference) { return 1200.0 * std::log2(f / reference); }
 
 Material material(double density, double gigapascals, double megapascals = 1000.0) {
     Material m;
@@ -89,7 +90,7 @@ TEST_CASE("Young's coefficient of inharmonicity is this library's B", "[string]"
         const double young = 3.40397e13 * n * n * 0.1 * 0.1 / (nu0 * nu0 * std::pow(62.0, 4));
         const double firstOrder = 600.0 / std::log(2.0) * s->statics.inharmonicity * n * n;
         CHECK(firstOrder == Approx(young).epsilon(1e-5));
-        CHECK(cents(s->partials.frequency(n), n * nu0) == Approx(young).epsilon(s->statics.inharmonicity * n * n));
+        CHECK(centsBetween(s->partials.frequency(n), n * nu0) == Approx(young).epsilon(s->statics.inharmonicity * n * n));
     }
     CHECK(600.0 / std::log(2.0) * 3.466e-4 * 4 == Approx(1.2).epsilon(1e-3));
 }
@@ -135,7 +136,7 @@ TEST_CASE("The pitch is that of the first partial for wound strings with bare en
     d.build.windings[1].bareAtNut = d.build.windings[1].bareAtBridge = 0.02;
     const auto strung = strungToPitch(d, 41.2);
     REQUIRE(strung);
-    CHECK(std::abs(cents(strung->partials.frequency(1), 41.2)) < 1e-4);
+    CHECK(std::abs(centsBetween(strung->partials.frequency(1), 41.2)) < 1e-4);
     const auto began = std::chrono::steady_clock::now();
     for (int i = 0; i < 20; ++i)
         REQUIRE(strungToPitch(d, 41.2, 24));
@@ -258,7 +259,7 @@ TEST_CASE("Pitch goes with one over length, the root of tension and one over the
     CHECK(strungToTension(plain(soft, 0.5, 0.3), 50.0)->partials.frequency(1) / f == Approx(2.0).epsilon(1e-6));
     CHECK(strungToTension(plain(soft, 0.5, 0.6), 200.0)->partials.frequency(1) / f == Approx(2.0).epsilon(1e-6));
     CHECK(strungToTension(plain(soft, 1.0, 0.6), 50.0)->partials.frequency(1) / f == Approx(0.5).epsilon(1e-6));
-    CHECK(cents(strungToTension(plain(soft, 0.5, 0.6), 50.0 * 1.122462)->partials.frequency(1), f) == Approx(100.0).margin(1e-3));
+    CHECK(centsBetween(strungToTension(plain(soft, 0.5, 0.6), 50.0 * 1.122462)->partials.frequency(1), f) == Approx(100.0).margin(1e-3));
 }
 
 // Rigid frame: Δf/f = −(αE/2σ)·Δθ; moving frame α − α_frame. The Science of String Instruments, eq. 21.1; cents per
@@ -279,7 +280,7 @@ TEST_CASE("Warmth flattens as published, on a rigid and on an iron frame", "[str
         const auto drift = [&](double frame) {
             const auto warmer = atTemperature(*tuned, 0.01, frame);
             REQUIRE(warmer);
-            return cents(warmer->partials.frequency(1), tuned->partials.frequency(1)) / 0.01;
+            return centsBetween(warmer->partials.frequency(1), tuned->partials.frequency(1)) / 0.01;
         };
         CAPTURE(row.alpha, row.mpa);
         CHECK(drift(0.0) == Approx(row.rigid).margin(2e-3));
@@ -294,7 +295,7 @@ TEST_CASE("A stop shortens, hinges and takes the nut's bare end away", "[string]
     for (const int fret : {1, 5, 7, 12, 19}) {
         const auto stopped = stoppedAt(*open, std::exp2(-fret / 12.0));
         REQUIRE(stopped);
-        CHECK(cents(stopped->partials.frequency(1), open->partials.frequency(1)) == Approx(100.0 * fret).margin(1e-3));
+        CHECK(centsBetween(stopped->partials.frequency(1), open->partials.frequency(1)) == Approx(100.0 * fret).margin(1e-3));
         CHECK(stopped->statics.tension == open->statics.tension);
     }
     auto d = plain(*findBuiltInMaterial("music wire"), 0.4, 0.65);

@@ -1,5 +1,6 @@
 // Notes, pitch and temperaments. Cents of the temperaments were computed in double arithmetic from their fifths (pure
 // fifth 701.9550, syntonic comma 21.5063, Pythagorean comma 23.4600 cents); pitches from ISO 16 (A4 = 440 Hz).
+#include "dsp/analysis/Measure.h"
 #include "dsp/tuning/Notes.h"
 #include "dsp/tuning/Tuning.h"
 
@@ -10,13 +11,13 @@
 #include <iostream>
 
 using namespace hitchpin::tuning;
+using hitchpin::analysis::centsBetween;
 
 namespace {
 
 constexpr std::array<double, 12> noOffsets{};
 /// The tables print three decimals.
 constexpr double printedCents = 0.0006;
-double cents(double f, double reference) { return 1200.0 * std::log2(f / reference); }
 Tuning equal(double a4 = 440.0) { return {a4, *findTemperament("equal"), 0, noOffsets}; }
 
 } // namespace
@@ -95,18 +96,18 @@ TEST_CASE("A root moves the temperament and offsets count from it", "[tuning]") 
     const auto& meantone = *findTemperament("quarter-comma meantone");
     const Tuning onD(440.0, meantone, 2, noOffsets);
     // The major third over the root is pure wherever the root lies.
-    CHECK(cents(onD.frequency(66), onD.frequency(62)) == Approx(386.3137).margin(1e-3));
+    CHECK(centsBetween(onD.frequency(66), onD.frequency(62)) == Approx(386.3137).margin(1e-3));
     std::array<double, 12> offsets{};
     offsets[4] = 5.0; // the third over D
     const Tuning moved(440.0, meantone, 2, offsets);
-    CHECK(cents(moved.frequency(66), moved.frequency(62)) == Approx(391.3137).margin(1e-3));
+    CHECK(centsBetween(moved.frequency(66), moved.frequency(62)) == Approx(391.3137).margin(1e-3));
     CHECK(moved.centsFromEqual(69) == Approx(0.0).margin(1e-12));
 }
 
 TEST_CASE("The harmonic intervals are those of whole ratios", "[tuning]") {
     const double harmonics[] = {1200, 1901.955, 2400, 2786.314, 3101.955, 3368.826, 3600, 3803.910};
     for (int n = 2; n <= 9; ++n)
-        CHECK(cents(n, 1) == Approx(harmonics[n - 2]).margin(printedCents));
+        CHECK(centsBetween(n, 1) == Approx(harmonics[n - 2]).margin(printedCents));
 }
 
 // Octave C4–C5 with B of 2.916e-4 and 8.26e-4 (measured on a grand piano): f1 to f1 0.757 cent wide for 2:1 and 1.636
@@ -115,8 +116,8 @@ TEST_CASE("The harmonic intervals are those of whole ratios", "[tuning]") {
 TEST_CASE("Stretched octaves match the partials of both strings", "[tuning]") {
     const auto b = [](int note) { return 2.916e-4 * std::exp2((note - 60) / 12.0 * std::log2(8.26e-4 / 2.916e-4)); };
     const Tuning two = equal().stretched(Stretch::octaves2to1, b), four = equal().stretched(Stretch::octaves4to2, b);
-    CHECK(cents(two.frequency(72), two.frequency(60)) - 1200.0 == Approx(0.757).margin(5e-4));
-    CHECK(cents(four.frequency(72), four.frequency(60)) - 1200.0 == Approx(1.636).margin(5e-4));
+    CHECK(centsBetween(two.frequency(72), two.frequency(60)) - 1200.0 == Approx(0.757).margin(5e-4));
+    CHECK(centsBetween(four.frequency(72), four.frequency(60)) - 1200.0 == Approx(1.636).margin(5e-4));
     double worst = 0.0;
     for (int note = 0; note < 116; ++note) {
         const auto partial = [&](int which, int n) {
@@ -124,7 +125,7 @@ TEST_CASE("Stretched octaves match the partials of both strings", "[tuning]") {
             return four.frequency(which) * n * law;
         };
         if (note < 57 || note >= 69 || note == 57) // within the temperament octave only its own ends are matched
-            worst = std::max(worst, std::abs(cents(partial(note + 12, 2), partial(note, 4))));
+            worst = std::max(worst, std::abs(centsBetween(partial(note + 12, 2), partial(note, 4))));
     }
     std::cout << "4:2 octaves: partials apart by at most " << worst << " cent (allowed 1e-9)\n";
     CHECK(worst < 1e-9);
