@@ -8,11 +8,12 @@ cd "${1:-$(dirname "$0")/..}"
 declare -A allowed=(
     [dsp/base]='dsp/base/|Eigen/'
     [dsp/string]='dsp/(base|string)/|Eigen/'
+    [dsp/board]='dsp/(base|string|board)/|Eigen/'
     [dsp/tuning]='dsp/(base|tuning)/'
-    [dsp/design]='dsp/(base|string|design)/|Eigen/'
+    [dsp/design]='dsp/(base|string|board|design)/|Eigen/'
     # The engine runs plain designed numbers: it sees their types, never how they are made.
-    [dsp/engine]='dsp/(base|engine)/|dsp/design/(InstrumentDesign|LoopDesign|Sections)\.h|dsp/string/Partials\.h'
-    [dsp/playing]='dsp/(base|string|tuning|design|engine|playing)/'
+    [dsp/engine]='dsp/(base|engine)/|dsp/design/(InstrumentDesign|LoopDesign|ModeFilter|Sections)\.h|dsp/board/Soundboard\.h|dsp/string/Partials\.h'
+    [dsp/playing]='dsp/(base|string|board|tuning|design|engine|playing)/'
     [dsp/analysis]='dsp/(base|analysis)/|Eigen/|unsupported/Eigen/'
     [Source/document]='dsp/|Source/document/|juce_core/'
     [Source/report]='dsp/|Source/(document|report)/|juce_core/'

@@ -100,9 +100,9 @@ private:
         if (all.empty())
             all.emplace_back();
         for (const auto& from : all) {
-            design::BridgeDescription to;
+            board::Bridge to;
             to.name = from.name;
-            to.kind = static_cast<design::BridgeKind>(from.kind);
+            to.kind = static_cast<board::BridgeKind>(from.kind);
             to.points = from.points;
             to.resistance = from.kind == BridgeKind::rigid ? 0.0 : from.resistanceKgS;
             for (const auto& mode : from.modes)

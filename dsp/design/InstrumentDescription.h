@@ -1,31 +1,13 @@
 // A whole instrument in SI, ready to be designed. Where the layers above hand over to the sound.
 #pragma once
 
+#include "dsp/board/Soundboard.h"
 #include "dsp/string/Strung.h"
 
 #include <string>
 #include <vector>
 
 namespace hitchpin::design {
-
-struct BoardMode {
-    double frequency = 0.0; ///< Hz
-    double q = 0.0;
-    double mass = 0.0;      ///< kg, effective at the bridge
-    double angle = 0.0;     ///< rad from across towards into
-    std::vector<double> shape; ///< over the bridge's points
-    double pan = 0.0;       ///< −1…1
-};
-
-enum class BridgeKind { rigid, resistance, soundboard };
-
-struct BridgeDescription {
-    std::string name;
-    BridgeKind kind = BridgeKind::rigid;
-    int points = 1;
-    double resistance = 0.0; ///< kg/s, of a resistance or of the soundboard's remainder
-    std::vector<BoardMode> modes;
-};
 
 /// Strings that sound one note together.
 struct CourseDescription {
@@ -42,7 +24,7 @@ struct CourseDescription {
 
 struct InstrumentDescription {
     std::string name;
-    std::vector<BridgeDescription> bridges;
+    std::vector<board::Bridge> bridges;
     std::vector<CourseDescription> courses;
 };
 

@@ -1,8 +1,11 @@
 #include "dsp/design/InstrumentDesign.h"
 
+#include "dsp/design/ModeFilter.h"
+
 #include <algorithm>
 #include <cmath>
 #include <cstdio>
+#include <numbers>
 
 namespace hitchpin::design {
 
@@ -31,10 +34,15 @@ std::string problemWith(const InstrumentDescription& description) {
     if (description.courses.empty())
         return "the instrument has no courses";
     for (std::size_t i = 0; i < description.bridges.size(); ++i) {
-        const BridgeDescription& bridge = description.bridges[i];
-        if (bridge.kind != BridgeKind::rigid &&
+        const board::Bridge& bridge = description.bridges[i];
+        if (bridge.kind != board::BridgeKind::rigid &&
             !(bridge.resistance > 0.0 && std::isfinite(bridge.resistance)))
             return "bridges[" + std::to_string(i) + "]: its resistance must be over 0 kg/s";
+        for (const board::Mode& mode : bridge.modes)
+            if (!(mode.frequency > 0.0 && mode.q > 0.0 && mode.mass > 0.0) ||
+                mode.shape.size() != static_cast<std::size_t>(std::max(1, bridge.points)))
+                return "bridges[" + std::to_string(i) +
+                       "]: a mode needs a frequency, a Q and a mass over 0 and its shape at each point";
     }
     for (std::size_t i = 0; i < description.courses.size(); ++i) {
         const CourseDescription& course = description.courses[i];
@@ -48,7 +56,36 @@ std::string problemWith(const InstrumentDescription& description) {
     return {};
 }
 
+/// Root mean square of the mobility into the board, without strings, over a logarithmic scale of what is heard best.
+double meanMobility(const board::Bridge& bridge) {
+    constexpr double lowest = 80.0, highest = 5000.0; // Hz
+    constexpr int points = 400;
+    const board::MobilityAt mobility(bridge, 0.5);
+    double sum = 0.0;
+    for (int i = 0; i < points; ++i) {
+        const double hz = lowest * std::pow(highest / lowest, (i + 0.5) / points);
+        sum += std::norm(mobility({0.0, 2.0 * std::numbers::pi * hz}).into);
+    }
+    return std::sqrt(sum / points);
+}
+
 } // namespace
+
+BridgeDesign bridgeDesign(const board::Bridge& from, double sampleRate) {
+    BridgeDesign bridge;
+    bridge.kind = from.kind;
+    if (from.kind == board::BridgeKind::rigid)
+        return bridge;
+    bridge.resistance = from.resistance;
+    bridge.points = std::max(1, from.points);
+    if (from.kind == board::BridgeKind::soundboard) {
+        for (const board::Mode& mode : from.modes)
+            if (mode.frequency <= highestModeShareOfRate * sampleRate)
+                bridge.modes.push_back(mode);
+        bridge.heard = 1.0 / meanMobility(from);
+    }
+    return bridge;
+}
 
 Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentDescription& description,
                                                                const LoopSettings& settings,
@@ -58,8 +95,8 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
 
     auto design = std::make_shared<InstrumentDesign>();
     design->sampleRate = settings.sampleRate;
-    for (const BridgeDescription& bridge : description.bridges)
-        design->bridges.push_back({bridge.kind, bridge.kind == BridgeKind::rigid ? 0.0 : bridge.resistance});
+    for (const board::Bridge& bridge : description.bridges)
+        design->bridges.push_back(bridgeDesign(bridge, settings.sampleRate));
 
     std::size_t loops = 0, loopsDone = 0;
     for (const CourseDescription& course : description.courses)

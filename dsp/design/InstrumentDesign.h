@@ -40,9 +40,16 @@ struct CourseDesign {
 };
 
 struct BridgeDesign {
-    BridgeKind kind = BridgeKind::rigid;
+    board::BridgeKind kind = board::BridgeKind::rigid;
     double resistance = 0.0;     ///< kg/s; unused where rigid
+    int points = 1;
+    std::vector<board::Mode> modes{}; ///< those that the sample rate can hold
+    /// N per m/s: a soundboard is heard by its motion, as the force that would move its mean mobility alike.
+    double heard = 0.0;
 };
+
+/// The bridge at a sample rate, its mean mobility worked out.
+BridgeDesign bridgeDesign(const board::Bridge&, double sampleRate);
 
 struct InstrumentDesign {
     double sampleRate = 0.0;

@@ -1,5 +1,6 @@
 #include "dsp/engine/Engine.h"
 
+#include "dsp/engine/Bridge.h"
 #include "dsp/engine/Rail.h"
 
 #include <algorithm>
@@ -13,6 +14,7 @@ namespace {
 /// All that depends on anything but the sound itself happens where the sample clock is a multiple of these, so that
 /// it cannot depend on the host's blocks.
 constexpr std::int64_t tile = Rail::longestChunk;
+static_assert(Rail::longestChunk == Bridge::longestChunk);
 constexpr std::int64_t restCheck = 16 * tile;
 
 /// A rail with less energy rests: on a guitar string about 4e-10 N at the bridge, 214 dB under 20 N.
@@ -31,8 +33,15 @@ constexpr double damperFalls = 0.005;
 constexpr double damperLeaves = 0.001;
 constexpr double listeningMoves = 0.005;
 
-enum Direction { across, into };
-enum Side { left, right };
+enum Side { left, right, plain };
+/// What is heard on either side, and of the plain sum.
+using Gains = std::array<double, 3>;
+
+/// What is heard at a place 0…1 from left to right: constant power, and the sum as it stands in the middle.
+Gains gainsAt(double place, double spread, double directed) {
+    const double turn = std::numbers::pi * (0.25 + 0.5 * spread * (place - 0.5));
+    return {std::numbers::sqrt2 * std::cos(turn) * directed, std::numbers::sqrt2 * std::sin(turn) * directed, directed};
+}
 
 } // namespace
 
@@ -53,15 +62,16 @@ struct Engine::Running {
         double damperT60 = 0.0; ///< 0: lifted
         double impedance = 0.0;
         bool freeBridge = false;
-        int bridge = -1;        ///< whose motion it shares in the direction `into`; −1 for none
+        int bridge = -1;        ///< whose motion it shares; −1 where that is rigid, or its end free
+        board::Sharing place;   ///< on the bridge
         double position = 0.5;
-        /// [direction][side], and the plain sum's by direction.
-        std::array<std::array<double, 2>, 2> heardFrom{}, heardTo{};
+        std::array<Gains, 2> heardFrom{}, heardTo{}; ///< by direction
     };
 
-    struct Bridge {
+    struct Driven {
+        Bridge bridge;
         std::vector<int> strings;
-        double resistance = 0.0;
+        std::vector<Gains> heardFrom, heardTo; ///< by source
         double peakVelocity = 0.0;    ///< since the last check
         std::int64_t stillUntil = 0;  ///< after `silence` nothing is woken by it until what rang is out
     };
@@ -77,13 +87,17 @@ struct Engine::Running {
     void reset() noexcept;
     void speak(String&, int stop, double putOutSeconds) noexcept;
     double holdFor(const String&, const RailLoop&) const noexcept;
-    void wake(Bridge&) noexcept;
+    void wake(Driven&) noexcept;
+    bool movesWith(const String& string, Direction direction) const noexcept {
+        return string.bridge >= 0 &&
+               bridges[static_cast<std::size_t>(string.bridge)].bridge.firstComponent(direction) >= 0;
+    }
     void setListening(const Listening&) noexcept;
 
     void run(double* leftOut, double* rightOut, int count) noexcept;
-    void runBridge(Bridge&, double* leftOut, double* rightOut, int count) noexcept;
+    void runBridge(Driven&, double* leftOut, double* rightOut, int count) noexcept;
     void runAlone(const String&, Rail&, Direction, double* leftOut, double* rightOut, int count) noexcept;
-    void hear(const String&, Direction, const double* force, double* leftOut, double* rightOut, int offset,
+    void hear(const Gains& from, const Gains& to, const double* force, double* leftOut, double* rightOut, int offset,
               int count) noexcept;
     void restWhatIsOver() noexcept;
 
@@ -94,7 +108,7 @@ struct Engine::Running {
     std::shared_ptr<const design::InstrumentDesign> design;
     double sampleRate;
     std::vector<String> strings;
-    std::vector<Bridge> bridges;
+    std::vector<Driven> bridges;
     std::int64_t clock = 0; ///< the next sample
 
     Listening listening;
@@ -105,6 +119,7 @@ struct Engine::Running {
     struct Port {
         const String* string;
         Rail* rail;
+        Direction direction;
     };
     std::vector<Port> ports;
 };
@@ -112,7 +127,7 @@ struct Engine::Running {
 Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     : design(std::move(given)), sampleRate(design->sampleRate) {
     for (const auto& bridge : design->bridges)
-        bridges.push_back({{}, bridge.resistance, 0.0, 0});
+        bridges.push_back({Bridge(bridge, sampleRate), {}, {}, {}, 0.0, 0});
     strings.reserve(design->strings.size());
     for (const auto& from : design->strings) {
         String& string = strings.emplace_back();
@@ -123,15 +138,19 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
         string.impedance = from.impedance;
         string.freeBridge = from.ends.bridge == string::End::free;
         string.position = std::clamp(from.bridgePosition, 0.0, 1.0);
-        // A soundboard sounds as its remainder for now: the plate's resistance.
-        if (!string.freeBridge && design->bridges[static_cast<std::size_t>(from.bridge)].kind != design::BridgeKind::rigid) {
+        Driven& driven = bridges[static_cast<std::size_t>(from.bridge)];
+        if (!string.freeBridge && !driven.bridge.rigid()) {
             string.bridge = from.bridge;
-            bridges[static_cast<std::size_t>(from.bridge)].strings.push_back(static_cast<int>(strings.size()) - 1);
+            string.place = board::sharing(string.position, design->bridges[static_cast<std::size_t>(from.bridge)].points);
+            driven.strings.push_back(static_cast<int>(strings.size()) - 1);
         }
     }
     std::size_t mostPorts = 1;
-    for (const auto& bridge : bridges)
-        mostPorts = std::max(mostPorts, bridge.strings.size() * slotCount);
+    for (Driven& driven : bridges) {
+        mostPorts = std::max(mostPorts, driven.strings.size() * slotCount * 2);
+        driven.heardFrom.resize(static_cast<std::size_t>(driven.bridge.sources()));
+        driven.heardTo = driven.heardFrom;
+    }
     ports.reserve(mostPorts);
     waves.assign(mostPorts * Rail::longestChunk, 0.0);
     reset();
@@ -148,9 +167,10 @@ void Engine::Running::reset() noexcept {
                 rail.speak(string.stops.front());
         }
     }
-    for (Bridge& bridge : bridges) {
-        bridge.peakVelocity = 0.0;
-        bridge.stillUntil = 0;
+    for (Driven& driven : bridges) {
+        driven.bridge.clear();
+        driven.peakVelocity = 0.0;
+        driven.stillUntil = 0;
     }
     setListening(listening);
 }
@@ -196,11 +216,12 @@ void Engine::Running::speak(String& string, int stop, double putOutSeconds) noex
 /// Every string on a bridge that moves may move with it, from the first sample on. One that rests loads the bridge
 /// with Z0 and swallows what it is given; so does one under its damper, which would give back some of it for a tenth
 /// of a second or so, far below what plays: that is left out, and with it most of the work on a damped instrument.
-void Engine::Running::wake(Bridge& bridge) noexcept {
-    for (const int index : bridge.strings) {
+void Engine::Running::wake(Driven& driven) noexcept {
+    for (const int index : driven.strings) {
         String& string = strings[static_cast<std::size_t>(index)];
-        if (string.damperT60 <= 0.0)
-            string.slots[static_cast<std::size_t>(string.speaking)].rails[into].wake();
+        for (const Direction direction : {across, into})
+            if (string.damperT60 <= 0.0 && driven.bridge.firstComponent(direction) >= 0)
+                string.slots[static_cast<std::size_t>(string.speaking)].rails[direction].wake();
     }
 }
 
@@ -210,16 +231,27 @@ void Engine::Running::setListening(const Listening& wanted) noexcept {
                              ? 1.0 - static_cast<double>(listeningSettled - clock) / samples(listeningMoves)
                              : 1.0;
     listening = wanted;
+    const auto turn = [share](Gains& from, Gains& to, const Gains& next) {
+        for (std::size_t side = 0; side < next.size(); ++side)
+            from[side] += share * (to[side] - from[side]);
+        to = next;
+    };
     for (String& string : strings) {
-        const double turn = std::numbers::pi * (0.25 + 0.5 * wanted.spread * (string.position - 0.5));
-        const std::array<double, 2> sides{std::numbers::sqrt2 * std::cos(turn), std::numbers::sqrt2 * std::sin(turn)};
-        const std::array<double, 2> directions{std::cos(wanted.angle), std::sin(wanted.angle)};
-        for (std::size_t d = 0; d < 2; ++d)
-            for (std::size_t s = 0; s < 2; ++s) {
-                string.heardFrom[d][s] += share * (string.heardTo[d][s] - string.heardFrom[d][s]);
-                string.heardTo[d][s] = directions[d] * sides[s];
-            }
+        const bool byBoard = string.bridge >= 0 && bridges[static_cast<std::size_t>(string.bridge)].bridge.heardByBoard();
+        for (const Direction direction : {across, into}) {
+            const double directed = byBoard              ? 0.0
+                                    : direction == across ? std::cos(wanted.angle)
+                                                          : std::sin(wanted.angle);
+            turn(string.heardFrom[direction], string.heardTo[direction],
+                 gainsAt(string.position, wanted.spread, directed));
+        }
     }
+    for (Driven& driven : bridges)
+        for (int i = 0; i < driven.bridge.sources(); ++i) {
+            const Bridge::Source& source = driven.bridge.source(i);
+            turn(driven.heardFrom[static_cast<std::size_t>(i)], driven.heardTo[static_cast<std::size_t>(i)],
+                 gainsAt(source.place, wanted.spread, std::cos(source.angle - wanted.angle)));
+        }
     listeningSettled = clock == 0 ? 0 : clock + samples(listeningMoves);
 }
 
@@ -230,15 +262,13 @@ void Engine::Running::run(double* leftOut, double* rightOut, int count) noexcept
     std::fill_n(leftOut, count, 0.0);
     if (rightOut != nullptr)
         std::fill_n(rightOut, count, 0.0);
-    for (Bridge& bridge : bridges)
-        runBridge(bridge, leftOut, rightOut, count);
+    for (Driven& driven : bridges)
+        runBridge(driven, leftOut, rightOut, count);
     for (String& string : strings)
-        for (Slot& slot : string.slots) {
-            // Across, every bridge is rigid so far: it yields into the soundboard only.
-            runAlone(string, slot.rails[across], across, leftOut, rightOut, count);
-            if (string.bridge < 0)
-                runAlone(string, slot.rails[into], into, leftOut, rightOut, count);
-        }
+        for (Slot& slot : string.slots)
+            for (const Direction direction : {across, into})
+                if (!movesWith(string, direction))
+                    runAlone(string, slot.rails[direction], direction, leftOut, rightOut, count);
     clock += count;
     if (clock % tile == 0) {
         for (String& string : strings)
@@ -246,59 +276,68 @@ void Engine::Running::run(double* leftOut, double* rightOut, int count) noexcept
                 for (Rail& rail : slot.rails)
                     if (rail.running())
                         rail.flush();
+        for (Driven& driven : bridges)
+            driven.bridge.flush();
         if (clock % restCheck == 0)
             restWhatIsOver();
     }
 }
 
-/// The bridge moves with one velocity v under the forces of its strings and its own resistance. A string pulls with
-/// Z·(in − out) and in + out = v, so (ΣZ + R)·v = 2·ΣZ·in. Passive: Σ Z·(in² − out²) = R·v².
 /// Every loop is longer than the steps taken here, so that all arriving waves are known before the junction: it is
 /// exact at every sample.
-void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOut, int count) noexcept {
-    ports.clear();
-    double load = bridge.resistance;
-    int step = count;
-    for (const int index : bridge.strings) {
-        String& string = strings[static_cast<std::size_t>(index)];
-        for (int i = 0; i < slotCount; ++i) {
-            Rail& rail = string.slots[static_cast<std::size_t>(i)].rails[into];
-            // A string at rest still holds the bridge.
-            if (rail.running() || i == string.speaking)
-                load += string.impedance;
-            if (rail.running()) {
-                ports.push_back({&string, &rail});
-                step = std::min(step, rail.delay());
-            }
-        }
-    }
-    if (ports.empty())
+void Engine::Running::runBridge(Driven& driven, double* leftOut, double* rightOut, int count) noexcept {
+    Bridge& bridge = driven.bridge;
+    if (bridge.rigid())
         return;
+    ports.clear();
+    bridge.startLoad();
+    int step = count;
+    for (const int index : driven.strings) {
+        String& string = strings[static_cast<std::size_t>(index)];
+        for (int i = 0; i < slotCount; ++i)
+            for (const Direction direction : {across, into}) {
+                Rail& rail = string.slots[static_cast<std::size_t>(i)].rails[direction];
+                // A string at rest still holds the bridge.
+                if (rail.running() || i == string.speaking)
+                    bridge.addLoad(direction, string.place, string.impedance);
+                if (rail.running() && bridge.firstComponent(direction) >= 0) {
+                    ports.push_back({&string, &rail, direction});
+                    step = std::min(step, rail.delay());
+                }
+            }
+    }
+    if (ports.empty() && !bridge.ringing())
+        return;
+    bridge.endLoad();
 
-    std::array<double, Rail::longestChunk> velocity;
     for (int offset = 0; offset < count; offset += step) {
         step = std::min(step, count - offset);
-        std::fill_n(velocity.begin(), step, 0.0);
+        bridge.clearDrive(step);
         double* wave = waves.data();
         for (const Port& port : ports) {
             port.rail->arrive(wave, step, clock + offset);
-            const double weight = 2.0 * port.string->impedance / load;
-            for (int i = 0; i < step; ++i)
-                velocity[static_cast<std::size_t>(i)] += weight * wave[i];
+            bridge.addDrive(port.direction, port.string->place, 2.0 * port.string->impedance, wave, step);
             wave += Rail::longestChunk;
         }
-        for (int i = 0; i < step; ++i)
-            bridge.peakVelocity = std::max(bridge.peakVelocity, std::abs(velocity[static_cast<std::size_t>(i)]));
+        bridge.run(step);
+        driven.peakVelocity = std::max(driven.peakVelocity, bridge.takePeak());
+        for (int i = 0; i < bridge.sources(); ++i)
+            hear(driven.heardFrom[static_cast<std::size_t>(i)], driven.heardTo[static_cast<std::size_t>(i)],
+                 bridge.heard(i), leftOut, rightOut, offset, step);
         wave = waves.data();
+        std::array<double, Rail::longestChunk> velocity, force;
         for (const Port& port : ports) {
-            std::array<double, Rail::longestChunk> force;
+            bridge.velocity(port.direction, port.string->place, velocity.data(), step);
             for (int i = 0; i < step; ++i) {
-                const double in = wave[i], out = velocity[static_cast<std::size_t>(i)] - in;
-                force[static_cast<std::size_t>(i)] = port.string->impedance * (in - out);
+                const auto at = static_cast<std::size_t>(i);
+                const double in = wave[i], out = velocity[at] - in;
+                force[at] = port.string->impedance * (in - out);
                 wave[i] = out;
             }
             port.rail->leave(wave, step);
-            hear(*port.string, into, force.data(), leftOut, rightOut, offset, step);
+            if (!bridge.heardByBoard())
+                hear(port.string->heardFrom[port.direction], port.string->heardTo[port.direction], force.data(), leftOut,
+                     rightOut, offset, step);
             wave += Rail::longestChunk;
         }
     }
@@ -321,14 +360,12 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
             wave[at] *= sign;
         }
         rail.leave(wave.data(), step);
-        hear(string, direction, force.data(), leftOut, rightOut, offset, step);
+        hear(string.heardFrom[direction], string.heardTo[direction], force.data(), leftOut, rightOut, offset, step);
     }
 }
 
-void Engine::Running::hear(const String& string, Direction direction, const double* force, double* leftOut,
-                           double* rightOut, int offset, int count) noexcept {
-    const auto& from = string.heardFrom[direction];
-    const auto& to = string.heardTo[direction];
+void Engine::Running::hear(const Gains& from, const Gains& to, const double* force, double* leftOut, double* rightOut,
+                           int offset, int count) noexcept {
     const auto share = [&](int i) {
         const std::int64_t toGo = listeningSettled - (clock + offset + i);
         return toGo > 0 ? 1.0 - static_cast<double>(toGo) / samples(listeningMoves) : 1.0;
@@ -344,11 +381,7 @@ void Engine::Running::hear(const String& string, Direction direction, const doub
         }
     };
     if (rightOut == nullptr) {
-        // The plain sum: the gain that both sides have at the middle, √½·√2 = 1 times the direction's.
-        const auto middle = [](const std::array<double, 2>& sides) {
-            return std::copysign(std::sqrt(0.5 * (sides[left] * sides[left] + sides[right] * sides[right])), sides[left]);
-        };
-        add(leftOut + offset, middle(from), middle(to));
+        add(leftOut + offset, from[plain], to[plain]);
         return;
     }
     add(leftOut + offset, from[left], to[left]);
@@ -356,12 +389,15 @@ void Engine::Running::hear(const String& string, Direction direction, const doub
 }
 
 void Engine::Running::restWhatIsOver() noexcept {
-    for (Bridge& bridge : bridges)
-        if (bridge.peakVelocity >= restVelocity && clock >= bridge.stillUntil)
-            wake(bridge);
+    for (Driven& driven : bridges) {
+        if (driven.peakVelocity >= restVelocity && clock >= driven.stillUntil)
+            wake(driven);
+        driven.bridge.rest(restEnergy);
+    }
     for (String& string : strings)
         for (Slot& slot : string.slots)
-            for (Rail& rail : slot.rails) {
+            for (const Direction direction : {across, into}) {
+                Rail& rail = slot.rails[direction];
                 if (!rail.running())
                     continue;
                 if (rail.presence.isZero()) {
@@ -370,13 +406,13 @@ void Engine::Running::restWhatIsOver() noexcept {
                 }
                 if (rail.releases.pending())
                     continue;
-                const bool fed = &rail == &slot.rails[into] && string.bridge >= 0 && string.damperT60 <= 0.0 &&
+                const bool fed = movesWith(string, direction) && string.damperT60 <= 0.0 &&
                                  bridges[static_cast<std::size_t>(string.bridge)].peakVelocity >= restVelocity;
                 if (!fed && energyOf(string, rail) < restEnergy)
                     rail.clear();
             }
-    for (Bridge& bridge : bridges)
-        bridge.peakVelocity = 0.0;
+    for (Driven& driven : bridges)
+        driven.peakVelocity = 0.0;
 }
 
 // The public face ----------------------------------------------------------------------------------------------
@@ -416,10 +452,10 @@ void Engine::pluck(int index, const Pluck& pluck) noexcept {
                                    design.ends.nut == string::End::free, string->freeBridge}),
                           r.clock);
         rail.wake();
-        if (direction == into && string->bridge >= 0) {
-            Running::Bridge& bridge = r.bridges[static_cast<std::size_t>(string->bridge)];
-            bridge.stillUntil = r.clock;
-            r.wake(bridge);
+        if (r.movesWith(*string, direction)) {
+            Running::Driven& driven = r.bridges[static_cast<std::size_t>(string->bridge)];
+            driven.stillUntil = r.clock;
+            r.wake(driven);
         }
     }
 }
@@ -447,17 +483,19 @@ void Engine::damp(int index, double t60) noexcept {
             rail.hold.jump(hold);
     }
     if (string->damperT60 <= 0.0 && string->bridge >= 0) {
-        Running::Bridge& bridge = r.bridges[static_cast<std::size_t>(string->bridge)];
-        if (bridge.peakVelocity >= restVelocity && r.clock >= bridge.stillUntil)
-            r.wake(bridge);
+        Running::Driven& driven = r.bridges[static_cast<std::size_t>(string->bridge)];
+        if (driven.peakVelocity >= restVelocity && r.clock >= driven.stillUntil)
+            r.wake(driven);
     }
 }
 
 void Engine::silence() noexcept {
     for (int index = 0; index < static_cast<int>(running_->strings.size()); ++index)
         silence(index);
-    for (Running::Bridge& bridge : running_->bridges)
-        bridge.stillUntil = running_->clock + running_->samples(silenced) + restCheck;
+    for (Running::Driven& driven : running_->bridges) {
+        driven.bridge.fade(running_->samples(silenced));
+        driven.stillUntil = running_->clock + running_->samples(silenced) + restCheck;
+    }
 }
 
 void Engine::silence(int index) noexcept {
@@ -489,6 +527,8 @@ double Engine::energy() const noexcept {
     double sum = 0.0;
     for (int index = 0; index < static_cast<int>(running_->strings.size()); ++index)
         sum += energy(index);
+    for (const Running::Driven& driven : running_->bridges)
+        sum += driven.bridge.energy();
     return sum;
 }
 
@@ -503,7 +543,10 @@ double Engine::energy(int index) const noexcept {
     return sum;
 }
 
-bool Engine::silent() const noexcept { return ringingStrings() == 0; }
+bool Engine::silent() const noexcept {
+    return ringingStrings() == 0 && std::none_of(running_->bridges.begin(), running_->bridges.end(),
+                                                 [](const auto& driven) { return driven.bridge.ringing(); });
+}
 
 int Engine::ringingStrings() const noexcept {
     return static_cast<int>(std::count_if(running_->strings.begin(), running_->strings.end(), [](const auto& string) {

@@ -15,10 +15,11 @@ struct Pluck {
     double angle = 1.5707963267948966; ///< rad from across towards into
 };
 
-/// Where the sound is taken: the forces with which the strings pull at their bridges. At a free end there is no
-/// force: what is heard of such a string is Z0 times the velocity of that end.
+/// Where the sound is taken. Of a rigid or resistive bridge: the forces with which the strings pull at it. Of a
+/// soundboard: its motion, modes and remainder, as the force that would move its mean mobility alike. At a free end
+/// there is no force: what is heard of such a string is Z0 times the velocity of that end.
 struct Listening {
-    double angle = 1.5707963267948966; ///< rad from across towards into: which direction of the force is heard
+    double angle = 1.5707963267948966; ///< rad from across towards into: which direction of force or motion is heard
     /// 0: both sides alike, each the plain sum; 1: the ends of a bridge lie fully left and right. In between with
     /// constant power.
     double spread = 0.0;
@@ -54,7 +55,7 @@ public:
     /// plain sum, whatever the spread.
     void process(double* left, double* right, int frames) noexcept;
 
-    /// Joules on all strings: never grows but by what a pluck puts in.
+    /// Joules on all strings and boards: never grows but by what a pluck puts in.
     double energy() const noexcept;
     /// Joules on one string.
     double energy(int string) const noexcept;

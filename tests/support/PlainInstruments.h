@@ -74,7 +74,7 @@ struct RealString {
 };
 
 inline design::InstrumentDescription realDescription(const std::vector<RealString>& courses,
-                                                     const design::BridgeDescription& bridge = {}) {
+                                                     const board::Bridge& bridge = {}) {
     design::InstrumentDescription instrument;
     instrument.bridges = {bridge};
     for (const auto& from : courses) {
@@ -102,7 +102,7 @@ inline design::InstrumentDescription realDescription(const std::vector<RealStrin
 }
 
 inline std::shared_ptr<const design::InstrumentDesign> realInstrument(const std::vector<RealString>& courses,
-                                                                      const design::BridgeDescription& bridge = {},
+                                                                      const board::Bridge& bridge = {},
                                                                       double sampleRate = 48000.0) {
     auto made = design::makeInstrument(realDescription(courses, bridge), {sampleRate, design::Quality::live});
     if (!made)

@@ -118,7 +118,7 @@ TEST_CASE("strings on their boards ring as long as a builder expects", "[presets
     for (const auto& course : p.described.instrument.courses) {
         INFO(name << " " << course.name);
         const auto& bridge = p.described.instrument.bridges[static_cast<std::size_t>(course.bridge)];
-        if (bridge.kind == design::BridgeKind::rigid)
+        if (bridge.kind == board::BridgeKind::rigid)
             continue;
         const auto& string = course.strings.front();
         const double n = static_cast<double>(course.strings.size());

@@ -29,8 +29,8 @@ string::Strung wire(double lengthM, double diameterM, double firstPartialHz) {
 InstrumentDescription instrument() {
     InstrumentDescription description;
     description.name = "test";
-    description.bridges = {{"yielding", BridgeKind::resistance, 1, 400.0, {}},
-                           {"rigid", BridgeKind::rigid, 1, 0.0, {}}};
+    description.bridges = {{"yielding", board::BridgeKind::resistance, 1, 400.0, {}},
+                           {"rigid", board::BridgeKind::rigid, 1, 0.0, {}}};
     CourseDescription low, middle, high;
     low.name = "A2";
     low.key = 45;

@@ -24,7 +24,7 @@ std::shared_ptr<const design::InstrumentDesign> coupled() {
          RealString{"music wire", 0.648, 0.33e-3, 329.6, 64, 1, 0.0, 7, false},
          RealString{"nylon", 0.65, 0.9e-3, 196.0, 55},
          RealString{"music wire", 0.052, 0.79e-3, 4186.0, 108, 1, 0.0, 0, true}},
-        {"bridge", design::BridgeKind::resistance, 1, 300.0, {}});
+        {"bridge", board::BridgeKind::resistance, 1, 300.0, {}});
     return design;
 }
 

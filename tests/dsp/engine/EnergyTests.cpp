@@ -53,9 +53,9 @@ std::shared_ptr<const design::InstrumentDesign> randomInstrument(std::mt19937& r
     std::uniform_real_distribution<double> unit(0.0, 1.0);
     auto design = std::make_shared<design::InstrumentDesign>();
     design->sampleRate = 48000.0;
-    design->bridges = {{design::BridgeKind::rigid, 0.0},
-                       {design::BridgeKind::resistance, std::exp2(12.0 * unit(random) - 2.0)},
-                       {design::BridgeKind::soundboard, std::exp2(6.0 * unit(random) + 3.0)}};
+    design->bridges = {{board::BridgeKind::rigid, 0.0},
+                       {board::BridgeKind::resistance, std::exp2(12.0 * unit(random) - 2.0)},
+                       {board::BridgeKind::soundboard, std::exp2(6.0 * unit(random) + 3.0)}};
     const std::size_t count = 1 + random() % 12;
     for (std::size_t i = 0; i < count; ++i) {
         design->strings.push_back(pool()[random() % pool().size()]);

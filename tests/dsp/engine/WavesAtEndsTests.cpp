@@ -116,7 +116,7 @@ TEST_CASE("A resistance reflects by its share, a matched one nothing", "[engine]
     for (const double ratio : {0.0, 0.1, 0.3, 1.0, 3.0, 10.0, 1000.0}) {
         const double resistance = ratio * impedance;
         const auto motion =
-            firstRoundTrip({roundTrip, impedance}, {design::BridgeKind::resistance, resistance});
+            firstRoundTrip({roundTrip, impedance}, {board::BridgeKind::resistance, resistance});
         const double reflected = (impedance - resistance) / (impedance + resistance);
         for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
             worst = std::max(worst, std::abs(motion.atPlace[t] - reflected * in[t - away]));

@@ -1,0 +1,91 @@
+#include "dsp/board/Soundboard.h"
+
+#include <Eigen/LU>
+
+#include <algorithm>
+#include <cmath>
+#include <numbers>
+
+namespace hitchpin::board {
+
+namespace {
+
+using Complex = std::complex<double>;
+
+void addWeights(std::vector<double>& weights, const Sharing& place) {
+    const auto first = static_cast<std::size_t>(place.first);
+    weights[first] += place.ofFirst;
+    if (place.ofSecond != 0.0)
+        weights[first + 1] += place.ofSecond;
+}
+
+} // namespace
+
+Sharing sharing(double position, int points) noexcept {
+    if (points <= 1)
+        return {};
+    const double along = std::clamp(position, 0.0, 1.0) * (points - 1);
+    const int first = std::min(static_cast<int>(along), points - 2);
+    return {first, 1.0 - (along - first), along - first};
+}
+
+double shapeAt(const Mode& mode, const Sharing& place) noexcept {
+    const auto first = static_cast<std::size_t>(place.first);
+    const double second = place.ofSecond != 0.0 ? place.ofSecond * mode.shape[first + 1] : 0.0;
+    return place.ofFirst * mode.shape[first] + second;
+}
+
+MobilityAt::MobilityAt(const Bridge& bridge, double position, const std::vector<Resting>& others) {
+    // A rigid bridge has nothing that moves.
+    if (bridge.kind == BridgeKind::rigid)
+        return;
+    const auto points = static_cast<std::size_t>(std::max(1, bridge.points));
+    here_.assign(points, 0.0);
+    addWeights(here_, sharing(position, bridge.points));
+    remainder_.assign(2 * points, 0.0);
+    std::fill(remainder_.begin() + static_cast<std::ptrdiff_t>(points), remainder_.end(), 1.0 / bridge.resistance);
+    for (const Mode& mode : bridge.modes) {
+        Part part{2.0 * std::numbers::pi * mode.frequency, mode.q, mode.mass, std::vector<double>(2 * points)};
+        for (std::size_t p = 0; p < points; ++p) {
+            part.motion[p] = mode.shape[p] * std::cos(mode.angle);
+            part.motion[points + p] = mode.shape[p] * std::sin(mode.angle);
+        }
+        parts_.push_back(std::move(part));
+    }
+    load_.assign(4 * points * points, 0.0);
+    for (const Resting& other : others) {
+        std::vector<double> weights(points, 0.0);
+        addWeights(weights, sharing(other.position, bridge.points));
+        for (std::size_t p = 0; p < points; ++p)
+            for (std::size_t q = 0; q < points; ++q)
+                for (const std::size_t direction : {std::size_t{0}, points})
+                    load_[(direction + p) * 2 * points + direction + q] += weights[p] * weights[q] * other.impedance;
+        loaded_ = loaded_ || other.impedance > 0.0;
+    }
+}
+
+Mobility MobilityAt::operator()(Complex s) const {
+    if (here_.empty())
+        return {};
+    const auto size = static_cast<Eigen::Index>(remainder_.size()), points = size / 2;
+    Eigen::MatrixXcd mobility = Eigen::MatrixXcd::Zero(size, size);
+    for (Eigen::Index i = 0; i < size; ++i)
+        mobility(i, i) = remainder_[static_cast<std::size_t>(i)];
+    for (const Part& part : parts_) {
+        const double w = part.frequency;
+        const Complex y = s / (part.mass * (s * s + s * (w / part.q) + w * w));
+        const Eigen::Map<const Eigen::VectorXd> motion(part.motion.data(), size);
+        mobility += y * (motion * motion.transpose());
+    }
+    if (loaded_) {
+        const Eigen::Map<const Eigen::MatrixXd> load(load_.data(), size, size);
+        mobility = (Eigen::MatrixXcd::Identity(size, size) + mobility * load).partialPivLu().solve(mobility).eval();
+    }
+    const Eigen::Map<const Eigen::VectorXd> here(here_.data(), points);
+    const auto between = [&](Eigen::Index row, Eigen::Index column) {
+        return (here.transpose() * mobility.block(row, column, points, points) * here).value();
+    };
+    return {between(0, 0), between(0, points), between(points, points)};
+}
+
+} // namespace hitchpin::board

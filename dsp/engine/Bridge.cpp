@@ -1,0 +1,239 @@
+#include "dsp/engine/Bridge.h"
+
+#include <algorithm>
+#include <cmath>
+#include <numbers>
+
+namespace hitchpin::engine {
+
+namespace {
+
+/// A mode whose angle is this near to one of the directions does not move in the other.
+constexpr double leastPart = 1e-9;
+
+} // namespace
+
+Bridge::Bridge(const design::BridgeDesign& design, double sampleRate)
+    : points_(std::max(1, design.points)), heardPerVelocity_(design.heard), resistance_(design.resistance) {
+    if (design.kind == board::BridgeKind::rigid) {
+        heardPerVelocity_ = 0.0;
+        return;
+    }
+    const auto points = static_cast<std::size_t>(points_);
+    const bool movesAcross = std::any_of(design.modes.begin(), design.modes.end(), [](const board::Mode& mode) {
+        return std::abs(std::cos(mode.angle)) > leastPart;
+    });
+    first_[across] = movesAcross ? 0 : -1;
+    first_[into] = movesAcross ? points_ : 0;
+    size_ = movesAcross ? 2 * points : points;
+
+    for (const board::Mode& mode : design.modes) {
+        modes_.push_back({design::modeFilter(mode, sampleRate)});
+        for (const Direction direction : {across, into}) {
+            const double part = direction == across ? std::cos(mode.angle) : std::sin(mode.angle);
+            for (std::size_t p = 0; p < points && first_[direction] >= 0; ++p)
+                motion_.push_back(part * mode.shape[p]);
+        }
+        sources_.push_back({mode.angle, 0.5 + 0.5 * mode.pan});
+    }
+    for (std::size_t p = 0; p < points && heardByBoard(); ++p)
+        sources_.push_back({0.5 * std::numbers::pi, points > 1 ? static_cast<double>(p) / (points_ - 1) : 0.5});
+
+    atOnce_.assign(size_ * size_, 0.0);
+    for (std::size_t p = 0; p < points; ++p) {
+        const std::size_t k = static_cast<std::size_t>(first_[into]) + p;
+        atOnce_[k * size_ + k] = 1.0 / resistance_;
+    }
+    for (std::size_t m = 0; m < modes_.size(); ++m)
+        for (std::size_t i = 0; i < size_; ++i)
+            for (std::size_t j = 0; j < size_; ++j)
+                atOnce_[i * size_ + j] += modes_[m].filter.g * motion_[m * size_ + i] * motion_[m * size_ + j];
+    load_.assign(size_ * size_, -1.0); // none: the first is solved
+    newLoad_ = byPull_ = byState_ = std::vector<double>(size_ * size_, 0.0);
+    work_.assign(2 * size_ * size_, 0.0);
+    drive_.assign(size_ * longestChunk, 0.0);
+    velocity_ = drive_;
+    heard_.assign(sources_.size() * longestChunk, 0.0);
+    sample_.assign(3 * size_, 0.0);
+}
+
+void Bridge::clear() noexcept {
+    for (ModeState& mode : modes_)
+        mode.u = mode.e = 0.0;
+    ringing_ = false;
+    fadeLeft_ = 0;
+    peak_ = 0.0;
+}
+
+void Bridge::fade(int samples) noexcept {
+    if (!ringing_)
+        return;
+    fadeLeft_ = std::max(1, samples);
+    fadeStep_ = std::exp(-14.0 / fadeLeft_); // to −120 dB, then nothing
+}
+
+double Bridge::energy() const noexcept {
+    double sum = 0.0;
+    for (const ModeState& mode : modes_)
+        sum += 0.5 * mode.filter.mass * (mode.u * mode.u + mode.e * mode.e);
+    return sum;
+}
+
+void Bridge::rest(double leastEnergy) noexcept {
+    if (ringing_ && energy() < leastEnergy)
+        clear();
+}
+
+void Bridge::flush() noexcept {
+    for (ModeState& mode : modes_) {
+        mode.u = std::abs(mode.u) < 1e-60 ? 0.0 : mode.u;
+        mode.e = std::abs(mode.e) < 1e-60 ? 0.0 : mode.e;
+    }
+}
+
+void Bridge::startLoad() noexcept { std::fill(newLoad_.begin(), newLoad_.end(), 0.0); }
+
+void Bridge::addLoad(Direction direction, const board::Sharing& place, double impedance) noexcept {
+    if (first_[direction] < 0)
+        return;
+    const auto k = static_cast<std::size_t>(first_[direction] + place.first);
+    newLoad_[k * size_ + k] += place.ofFirst * place.ofFirst * impedance;
+    if (place.ofSecond != 0.0) {
+        newLoad_[k * size_ + k + 1] += place.ofFirst * place.ofSecond * impedance;
+        newLoad_[(k + 1) * size_ + k] += place.ofFirst * place.ofSecond * impedance;
+        newLoad_[(k + 1) * size_ + k + 1] += place.ofSecond * place.ofSecond * impedance;
+    }
+}
+
+/// Gauss and Jordan on [1 + Y0·Z | 1], whose eigenvalues are all at least 1.
+void Bridge::endLoad() noexcept {
+    if (newLoad_ == load_)
+        return;
+    load_ = newLoad_; // same size: no allocation
+    const std::size_t n = size_, width = 2 * n;
+    for (std::size_t i = 0; i < n; ++i)
+        for (std::size_t j = 0; j < n; ++j) {
+            double sum = i == j ? 1.0 : 0.0;
+            for (std::size_t k = 0; k < n; ++k)
+                sum += atOnce_[i * n + k] * load_[k * n + j];
+            work_[i * width + j] = sum;
+            work_[i * width + n + j] = i == j ? 1.0 : 0.0;
+        }
+    for (std::size_t c = 0; c < n; ++c) {
+        std::size_t pivot = c;
+        for (std::size_t i = c + 1; i < n; ++i)
+            if (std::abs(work_[i * width + c]) > std::abs(work_[pivot * width + c]))
+                pivot = i;
+        if (pivot != c)
+            std::swap_ranges(&work_[c * width], &work_[c * width] + width, &work_[pivot * width]);
+        const double scale = 1.0 / work_[c * width + c];
+        for (std::size_t j = 0; j < width; ++j)
+            work_[c * width + j] *= scale;
+        for (std::size_t i = 0; i < n; ++i) {
+            const double times = work_[i * width + c];
+            if (i == c || times == 0.0)
+                continue;
+            for (std::size_t j = 0; j < width; ++j)
+                work_[i * width + j] -= times * work_[c * width + j];
+        }
+    }
+    for (std::size_t i = 0; i < n; ++i)
+        for (std::size_t j = 0; j < n; ++j) {
+            byState_[i * n + j] = work_[i * width + n + j];
+            double sum = 0.0;
+            for (std::size_t k = 0; k < n; ++k)
+                sum += work_[i * width + n + k] * atOnce_[k * n + j];
+            byPull_[i * n + j] = sum;
+        }
+}
+
+void Bridge::clearDrive(int count) noexcept {
+    for (std::size_t k = 0; k < size_; ++k)
+        std::fill_n(row(drive_, k), count, 0.0);
+}
+
+void Bridge::addDrive(Direction direction, const board::Sharing& place, double twiceImpedance, const double* in,
+                      int count) noexcept {
+    const auto k = static_cast<std::size_t>(first_[direction] + place.first);
+    double* first = row(drive_, k);
+    const double ofFirst = place.ofFirst * twiceImpedance;
+    for (int i = 0; i < count; ++i)
+        first[i] += ofFirst * in[i];
+    if (place.ofSecond == 0.0)
+        return;
+    double* second = row(drive_, k + 1);
+    const double ofSecond = place.ofSecond * twiceImpedance;
+    for (int i = 0; i < count; ++i)
+        second[i] += ofSecond * in[i];
+}
+
+void Bridge::run(int count) noexcept {
+    const std::size_t n = size_;
+    double *const pull = sample_.data(), *const state = pull + n, *const v = state + n;
+    for (int i = 0; i < count; ++i) {
+        for (std::size_t k = 0; k < n; ++k) {
+            pull[k] = drive_[k * longestChunk + static_cast<std::size_t>(i)];
+            state[k] = 0.0;
+        }
+        for (std::size_t m = 0; m < modes_.size(); ++m) {
+            const ModeState& mode = modes_[m];
+            const double own = mode.filter.d * (2.0 * mode.u - mode.filter.kappa * mode.e);
+            for (std::size_t k = 0; k < n; ++k)
+                state[k] += motion_[m * n + k] * own;
+        }
+        for (std::size_t k = 0; k < n; ++k) {
+            double sum = 0.0;
+            for (std::size_t j = 0; j < n; ++j)
+                sum += byPull_[k * n + j] * pull[j] + byState_[k * n + j] * state[j];
+            v[k] = sum;
+            velocity_[k * longestChunk + static_cast<std::size_t>(i)] = sum;
+            peak_ = std::max(peak_, std::abs(sum));
+        }
+        for (std::size_t k = 0; k < n; ++k) { // from here on `pull` is what really pulls
+            double held = 0.0;
+            for (std::size_t j = 0; j < n; ++j)
+                held += load_[k * n + j] * v[j];
+            state[k] = pull[k] - held;
+        }
+        for (std::size_t m = 0; m < modes_.size(); ++m) {
+            ModeState& mode = modes_[m];
+            double force = 0.0;
+            for (std::size_t k = 0; k < n; ++k)
+                force += motion_[m * n + k] * state[k];
+            const double mean =
+                mode.filter.d * (2.0 * mode.u - mode.filter.kappa * mode.e) + mode.filter.g * force;
+            mode.u = 2.0 * mean - mode.u;
+            mode.e += mode.filter.kappa * mean;
+            if (heardByBoard())
+                heard_[m * longestChunk + static_cast<std::size_t>(i)] = heardPerVelocity_ * mean;
+        }
+        if (heardByBoard())
+            for (std::size_t p = 0; p < static_cast<std::size_t>(points_); ++p)
+                heard_[(modes_.size() + p) * longestChunk + static_cast<std::size_t>(i)] =
+                    heardPerVelocity_ / resistance_ * state[static_cast<std::size_t>(first_[into]) + p];
+        if (fadeLeft_ > 0) {
+            --fadeLeft_;
+            for (ModeState& mode : modes_) {
+                mode.u = fadeLeft_ > 0 ? fadeStep_ * mode.u : 0.0;
+                mode.e = fadeLeft_ > 0 ? fadeStep_ * mode.e : 0.0;
+            }
+        }
+    }
+    ringing_ = !modes_.empty();
+}
+
+void Bridge::velocity(Direction direction, const board::Sharing& place, double* out, int count) const noexcept {
+    const auto k = static_cast<std::size_t>(first_[direction] + place.first);
+    const double* first = &velocity_[k * longestChunk];
+    const double* second = place.ofSecond != 0.0 ? first + longestChunk : first;
+    for (int i = 0; i < count; ++i)
+        out[i] = place.ofFirst * first[i] + place.ofSecond * second[i];
+}
+
+double Bridge::takePeak() noexcept {
+    const double peak = peak_;
+    peak_ = 0.0;
+    return peak;
+}
+
+} // namespace hitchpin::engine
