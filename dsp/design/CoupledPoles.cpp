@@ -1,0 +1,276 @@
+#include "dsp/design/CoupledPoles.h"
+
+#include "dsp/design/LoopModel.h"
+#include "dsp/design/ModeFilter.h"
+
+#include <Eigen/LU>
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <complex>
+#include <numbers>
+
+namespace hitchpin::design {
+
+namespace {
+
+using Complex = std::complex<double>;
+constexpr double pi = std::numbers::pi;
+constexpr int mostRounds = 80;
+
+/// Strings with the same loop at the same place.
+struct Alike {
+    int first = 0; ///< index into the design's strings
+    int count = 1;
+    double turn = 1.0;
+    LoopModel loop;
+    Eigen::VectorXd weights; ///< over the bridge's points
+    double impedance = 0.0;  ///< of all together
+};
+
+bool sameLoop(const LoopDesign& a, const LoopDesign& b) {
+    const auto sameModel = [](const LoopModel& x, const LoopModel& y) { return constantsOf(x) == constantsOf(y); };
+    return a.delay == b.delay && a.turn == b.turn && a.sections.size() == b.sections.size() &&
+           a.shelves.size() == b.shelves.size() && sameModel(modelOf(a), modelOf(b));
+}
+
+class Equation {
+public:
+    Equation(const InstrumentDesign& design, int bridge) {
+        const BridgeDesign& from = design.bridges[static_cast<std::size_t>(bridge)];
+        points_ = from.points;
+        for (std::size_t i = 0; i < design.strings.size(); ++i) {
+            const StringDesign& string = design.strings[i];
+            if (string.bridge != bridge || string.ends.bridge == string::End::free)
+                continue;
+            const LoopDesign& loop = string.stops.front().loop;
+            const auto twin = std::find_if(strings_.begin(), strings_.end(), [&](const Alike& other) {
+                const StringDesign& first = design.strings[static_cast<std::size_t>(other.first)];
+                return first.bridgePosition == string.bridgePosition && sameLoop(first.stops.front().loop, loop);
+            });
+            if (twin != strings_.end()) {
+                ++twin->count;
+                twin->impedance += string.impedance;
+                continue;
+            }
+            const board::Sharing place = board::sharing(string.bridgePosition, points_);
+            Eigen::VectorXd weights = Eigen::VectorXd::Zero(points_);
+            weights[place.first] = place.ofFirst;
+            if (place.ofSecond != 0.0)
+                weights[place.first + 1] = place.ofSecond;
+            strings_.push_back({static_cast<int>(i), 1, loop.turn, modelOf(loop), std::move(weights),
+                                string.impedance});
+        }
+        for (const board::Mode& mode : from.modes) {
+            movesAcross_ = movesAcross_ || std::abs(std::cos(mode.angle)) > 1e-9;
+            modes_.push_back({modeFilter(mode, design.sampleRate), {}});
+        }
+        const Eigen::Index size = movesAcross_ ? 2 * points_ : points_;
+        for (std::size_t m = 0; m < modes_.size(); ++m) {
+            const board::Mode& mode = from.modes[m];
+            const Eigen::Map<const Eigen::VectorXd> shape(mode.shape.data(), points_);
+            modes_[m].motion.resize(size);
+            if (movesAcross_)
+                modes_[m].motion << std::cos(mode.angle) * shape, std::sin(mode.angle) * shape;
+            else
+                modes_[m].motion = std::sin(mode.angle) * shape;
+        }
+        remainder_ = Eigen::VectorXd::Zero(size);
+        remainder_.tail(points_).setConstant(1.0 / from.resistance);
+    }
+
+    const std::vector<Alike>& strings() const { return strings_; }
+    bool movesAcross() const { return movesAcross_; }
+    std::size_t modeCount() const { return modes_.size(); }
+    Complex modePole(std::size_t m) const {
+        const auto [a, b] = polynomial(modes_[m].filter);
+        return 2.0 * std::atanh(-0.5 * a + std::sqrt(Complex(0.25 * a * a - b)));
+    }
+
+    /// Where a pole of string `i` goes at first order: one shift for each direction.
+    std::array<Complex, 2> firstShifts(const Alike& string, Complex p) const {
+        const Eigen::MatrixXcd y = mobility(p, nullptr);
+        const double impedance = string.impedance;
+        const Complex byTurn = 2.0 / slopeOf(string, p) * impedance;
+        const auto here = [&](Eigen::Index row, Eigen::Index column) {
+            return (string.weights.transpose() * y.block(row, column, points_, points_) * string.weights).value();
+        };
+        if (!movesAcross_)
+            return {byTurn * here(0, 0), 0.0};
+        const Complex a = here(0, 0), b = here(0, points_), c = here(points_, points_);
+        const Complex root = std::sqrt(0.25 * (a - c) * (a - c) + b * b);
+        return {byTurn * (0.5 * (a + c) + root), byTurn * (0.5 * (a + c) - root)};
+    }
+
+    /// d ln g/dp of g = det(1 + Y·Z)·∏(1 − L)·∏(modes' denominators), which has all roots and no poles.
+    Complex logSlope(Complex p) const {
+        const Eigen::Index size = remainder_.size();
+        Eigen::MatrixXcd slope, y = mobility(p, &slope), z = Eigen::MatrixXcd::Zero(size, size), zSlope = z;
+        Complex sum = 0.0;
+        const Complex s = std::tanh(0.5 * p);
+        const double directions = movesAcross_ ? 2.0 : 1.0;
+        for (const Alike& string : strings_) {
+            const Complex loop = string.turn * std::exp(logLine(string.loop, p, s) + logLoss(string.loop, s));
+            const Complex loopSlope = loop * logLoopSlope(string.loop, s), open = 1.0 - loop;
+            sum -= directions * loopSlope / open;
+            const Complex impedance = string.impedance * (1.0 + loop) / open,
+                          impedanceSlope = string.impedance * 2.0 * loopSlope / (open * open);
+            const Eigen::MatrixXd place = string.weights * string.weights.transpose();
+            for (Eigen::Index at = 0; at < size; at += points_) {
+                z.block(at, at, points_, points_) += impedance * place;
+                zSlope.block(at, at, points_, points_) += impedanceSlope * place;
+            }
+        }
+        for (const Moving& mode : modes_) {
+            const auto [a, b] = polynomial(mode.filter);
+            sum += (2.0 * s + a) / (s * s + a * s + b) * 0.5 * (1.0 - s * s);
+        }
+        const Eigen::MatrixXcd inside = Eigen::MatrixXcd::Identity(size, size) + y * z;
+        return sum + inside.partialPivLu().solve(slope * z + y * zSlope).trace();
+    }
+
+private:
+    struct Moving {
+        ModeFilter filter;
+        Eigen::VectorXd motion;
+    };
+    /// a and b of the mode's denominator s² + a·s + b in s = tanh(p/2).
+    static std::array<double, 2> polynomial(const ModeFilter& filter) {
+        const double b = 0.25 * filter.kappa * filter.kappa;
+        return {0.5 / filter.d - 1.0 - b, b};
+    }
+    static Complex slopeOf(const Alike& string, Complex p) { return logLoopSlope(string.loop, std::tanh(0.5 * p)); }
+
+    Eigen::MatrixXcd mobility(Complex p, Eigen::MatrixXcd* slope) const {
+        Eigen::MatrixXcd y = remainder_.cast<Complex>().asDiagonal();
+        if (slope != nullptr)
+            slope->setZero(y.rows(), y.cols());
+        const Complex s = std::tanh(0.5 * p);
+        for (const Moving& mode : modes_) {
+            const auto [a, b] = polynomial(mode.filter);
+            const Complex below = s * s + a * s + b;
+            const double gain = 0.5 * mode.filter.g / mode.filter.d;
+            const Eigen::MatrixXd motion = mode.motion * mode.motion.transpose();
+            y += gain * s / below * motion;
+            if (slope != nullptr)
+                *slope += gain * (b - s * s) / (below * below) * 0.5 * (1.0 - s * s) * motion;
+        }
+        return y;
+    }
+
+    int points_ = 1;
+    bool movesAcross_ = false;
+    std::vector<Alike> strings_;
+    std::vector<Moving> modes_;
+    Eigen::VectorXd remainder_;
+};
+
+struct Root {
+    Complex p;
+    CoupledPole from;
+    bool settled = false;
+};
+
+/// Below one partial's own pole: its own loop on a rigid bridge.
+std::vector<Complex> ownPoles(const Alike& string, const LoopDesign& design, double highest) {
+    std::vector<Complex> poles;
+    Complex before = 0.0;
+    const double first = 2.0 * pi * design.firstPartialHz / design.sampleRate;
+    double spacing = design.turn < 0.0 ? 2.0 * first : first;
+    for (int n = 1;; ++n) {
+        const Complex start = n == 1 ? Complex(-1e-6, first) : before + Complex(0.0, spacing);
+        if (start.imag() > highest)
+            break;
+        const Complex pole = loopPole(string.loop, design.turn < 0.0 ? n - 0.5 : n, start);
+        if (std::isnan(pole.imag()) || pole.imag() > highest)
+            break;
+        if (n > 1)
+            spacing = pole.imag() - before.imag();
+        poles.push_back(pole);
+        before = pole;
+    }
+    return poles;
+}
+
+} // namespace
+
+CoupledPoles coupledPoles(const InstrumentDesign& design, int bridge, double highestHz, const Progress& progress) {
+    const Equation equation(design, bridge);
+    const double perSample = 2.0 * pi / design.sampleRate;
+    // A little further, so that roots at the border have their neighbours.
+    const double highest = std::min(1.05 * highestHz, 0.45 * design.sampleRate) * perSample;
+    CoupledPoles found;
+    std::vector<Root> roots;
+    const auto poleAt = [&](const Root& root) {
+        CoupledPole pole = root.from;
+        pole.frequency = root.p.imag() / perSample;
+        pole.decayRate = -root.p.real() * design.sampleRate;
+        return pole;
+    };
+    for (const Alike& string : equation.strings()) {
+        const LoopDesign& loop = design.strings[static_cast<std::size_t>(string.first)].stops.front().loop;
+        const auto own = ownPoles(string, loop, highest);
+        for (std::size_t i = 0; i < own.size(); ++i) {
+            const int n = static_cast<int>(i) + 1;
+            const auto shifts = equation.firstShifts(string, own[i]);
+            // A hair apart, so that no two start on one spot.
+            const Complex apart = Complex(1.0, 0.5) * 1e-9 * own[i].imag() / (1.0 + string.first % 97);
+            for (int direction = 0; direction < (equation.movesAcross() ? 2 : 1); ++direction) {
+                // No further than a partial: next to a strong mode the first order would say anything.
+                Complex shift = shifts[static_cast<std::size_t>(direction)];
+                const double longest = 0.1 * own[0].imag();
+                if (std::abs(shift) > longest)
+                    shift *= longest / std::abs(shift);
+                roots.push_back({own[i] + shift + static_cast<double>(direction + 1) * apart,
+                                 {0.0, 0.0, string.first, n, false}});
+                for (int other = 1; other < string.count; ++other)
+                    found.poles.push_back(poleAt({own[i], {0.0, 0.0, string.first, n, true}}));
+            }
+        }
+    }
+    // Beside the mode's own pole, on which the equation has no value.
+    for (std::size_t m = 0; m < equation.modeCount(); ++m)
+        roots.push_back({(1.0 + 1e-4 / (1.0 + static_cast<double>(m))) * equation.modePole(m), {0.0, 0.0, -1, static_cast<int>(m), false}});
+
+    std::size_t settled = 0;
+    for (int round = 0; round < mostRounds && settled < roots.size(); ++round) {
+        if (progress && !progress(static_cast<double>(settled) / static_cast<double>(roots.size())))
+            break;
+        for (Root& root : roots) {
+            if (root.settled)
+                continue;
+            Complex others = 0.0;
+            for (const Root& other : roots)
+                if (&other != &root)
+                    others += 1.0 / (root.p - other.p);
+            Complex step = 1.0 / (equation.logSlope(root.p) - others);
+            const double length = std::abs(step), longest = 0.02 * root.p.imag();
+            if (!std::isfinite(length)) {
+                root.p *= 1.0 + 1e-7;
+                continue;
+            }
+            if (length > longest)
+                step *= longest / length;
+            root.p -= step;
+            // Nothing here gains: a step into growth was too long.
+            if (root.p.real() > 0.0)
+                root.p.real(-0.01 * root.p.real());
+            if (length < 1e-13 + 1e-12 * std::abs(root.p)) {
+                root.settled = true;
+                ++settled;
+            }
+        }
+    }
+    for (const Root& root : roots)
+        if (root.settled)
+            found.poles.push_back(poleAt(root));
+        else
+            ++found.notSettled;
+    std::erase_if(found.poles, [&](const CoupledPole& pole) { return pole.frequency > highestHz; });
+    std::sort(found.poles.begin(), found.poles.end(),
+              [](const CoupledPole& a, const CoupledPole& b) { return a.frequency < b.frequency; });
+    return found;
+}
+
+} // namespace hitchpin::design
