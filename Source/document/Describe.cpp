@@ -4,6 +4,7 @@
 #include "Source/document/NotHeardYet.h"
 #include "Source/document/Rules.h"
 #include "Source/document/Strung.h"
+#include "dsp/board/OnBoard.h"
 #include "dsp/tuning/Notes.h"
 
 #include <algorithm>
@@ -62,6 +63,10 @@ public:
             courses = withMissingKeys(std::move(courses));
         for (const auto& course : courses)
             this->course(course);
+        if (problems_.empty() && instrument_.tuning.tuned == Tuned::onTheBoard)
+            tuneOnTheBoard(courses);
+        if (problems_.empty())
+            adjust(courses);
         if (!problems_.empty())
             return std::move(problems_);
         rules();
@@ -188,15 +193,8 @@ private:
         return all;
     }
 
-    /// What may be turned without touching the document acts on the tuned string, the climate last.
+    /// What else may be turned without touching the document acts on the tuned string, the climate last.
     std::optional<string::Strung> adjusted(string::Strung strung, const std::string& path) {
-        if (adjustments_.pitchOffsetCents != 0.0) {
-            const double hz = strung.partials.frequency(1) * ratio(adjustments_.pitchOffsetCents);
-            auto next = got(string::strungToPitch(strung.description, hz, partialCount_), path);
-            if (!next)
-                return next;
-            strung = std::move(*next);
-        }
         if (adjustments_.tensionFactor != 1.0 || adjustments_.lengthFactor != 1.0) {
             auto longer = strung.description;
             longer.speakingLength *= adjustments_.lengthFactor;
@@ -225,24 +223,56 @@ private:
         for (int s = 0; s < from.strings; ++s) {
             const auto index = static_cast<std::size_t>(s);
             const auto path = placed.path + (from.each.empty() ? "" : ".each[" + std::to_string(s) + "]");
-            const double detune = from.detuneCents.empty() ? 0.0 : from.detuneCents[index];
             // Strings that are alike in everything are worked out once.
-            if (s > 0 && from.each.empty() && detune == (from.detuneCents.empty() ? 0.0 : from.detuneCents[index - 1])) {
+            if (s > 0 && from.each.empty() && detuneOf(from, index) == detuneOf(from, index - 1)) {
                 to.strings.push_back(to.strings.back());
                 continue;
             }
-            auto strung = got(tuned(stringOf(from, index), detune, tuning_, instrument_, partialCount_), path);
+            const double off = detuneOf(from, index) + adjustments_.pitchOffsetCents;
+            auto strung = got(tuned(stringOf(from, index), off, tuning_, instrument_, partialCount_), path);
             if (!strung)
                 return;
-            const double atTuning = strung->partials.frequency(1) / ratio(detune);
-            auto ready = adjusted(std::move(*strung), path);
-            if (!ready)
-                return;
             if (s == 0)
-                to.openHz = from.tensionN ? atTuning : pitchOf(stringOf(from, 0), tuning_);
-            to.strings.push_back(std::move(*ready));
+                to.openHz = from.tensionN ? strung->partials.frequency(1) / ratio(off) : pitchOf(stringOf(from, 0), tuning_);
+            to.strings.push_back(std::move(*strung));
         }
         described_.instrument.courses.push_back(std::move(to));
+    }
+
+    static double detuneOf(const Course& course, std::size_t string) {
+        return course.detuneCents.empty() ? 0.0 : course.detuneCents[string];
+    }
+
+    /// Every string that has a pitch to meet is brought to it on the board, the others at rest meanwhile. Those with a
+    /// given tension keep it.
+    void tuneOnTheBoard(const std::vector<Placed>& placed) {
+        const auto alone = described_.instrument;
+        for (std::size_t c = 0; c < placed.size(); ++c) {
+            if (alone.bridges[static_cast<std::size_t>(placed[c].bridge)].kind == board::BridgeKind::rigid)
+                continue;
+            auto& strings = described_.instrument.courses[c].strings;
+            for (std::size_t s = 0; s < strings.size(); ++s) {
+                if (stringOf(placed[c].course, s).tensionN || strings[s].description.ends.bridge == string::End::free)
+                    continue;
+                if (s > 0 && placed[c].course.each.empty() &&
+                    detuneOf(placed[c].course, s) == detuneOf(placed[c].course, s - 1)) {
+                    strings[s] = strings[s - 1];
+                    continue;
+                }
+                auto tuned = got(board::tunedOnBoard(strings[s], strings[s].partials.frequency(1),
+                                                     design::mobilityFor(alone, c, s), partialCount_),
+                                 placed[c].path);
+                if (tuned)
+                    strings[s] = std::move(tuned->strung);
+            }
+        }
+    }
+
+    void adjust(const std::vector<Placed>& placed) {
+        for (std::size_t c = 0; c < placed.size(); ++c)
+            for (auto& string : described_.instrument.courses[c].strings)
+                if (auto ready = adjusted(std::move(string), placed[c].path))
+                    string = std::move(*ready);
     }
 
     void rules() {

@@ -19,20 +19,6 @@ bool isSaid(const R& record, const char* key) {
 
 std::vector<std::string> notHeardYet(const Instrument& instrument) {
     std::vector<std::string> said;
-    bool modes = false;
-    for (std::size_t i = 0; i < instrument.bridges.size(); ++i) {
-        const auto& bridge = instrument.bridges[i];
-        const auto path = "bridges[" + std::to_string(i) + "]";
-        if (!bridge.modes.empty()) {
-            modes = true;
-            said.push_back(path + ".modes: the soundboard's resonances; the bridge is its remainder alone, " +
-                           numberText(bridge.resistanceKgS) + " kg/s.");
-        }
-        if (bridge.points > 1)
-            said.push_back(path + ".points: the bridge moves as one piece.");
-    }
-    if (modes && instrument.tuning.tuned == Tuned::onTheBoard)
-        said.push_back("tuning.tuned \"on the board\": strings are tuned alone as long as no resonance pulls at them.");
     const auto beyondRings = std::count_if(instrument.courses.begin(), instrument.courses.end(), [](const auto& c) {
         return c.beyondMm.rings || std::any_of(c.each.begin(), c.each.end(), [](const auto& e) { return e.beyondMm.rings; });
     });

@@ -26,6 +26,8 @@ const std::vector<Column>& columns() {
         {"longitudinal_hz", "", &R::longitudinalHz},
         {"partials_hz", "partial_#_hz", &R::partialsHz},
         {"decay_t60_s", "decay_t60_#_s", &R::decayT60S},
+        {"board_t60_s", "board_t60_#_s", &R::boardT60S},
+        {"board_shift_cents", "", &R::boardShiftCents},
         {"warnings", "", &R::warnings},
     };
     return all;

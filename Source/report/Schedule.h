@@ -15,7 +15,7 @@ inline constexpr int partialsForSchedule = 24;
 
 struct ScheduleRow {
     std::string note;
-    double pitchHz = 0.0;
+    double pitchHz = 0.0;  ///< as it sounds on the board; partialsHz[0] is the string alone
     int strings = 1;
     double speakingLengthMm = 0.0;
     std::string core;      ///< "music wire 0.60 mm"
@@ -35,6 +35,8 @@ struct ScheduleRow {
     double longitudinalHz = 0.0;
     std::vector<double> partialsHz;
     std::vector<double> decayT60S; ///< the string alone
+    std::vector<double> boardT60S; ///< on its bridge, the others there at rest
+    double boardShiftCents = 0.0;  ///< by which the bridge moves the first partial
     std::vector<std::string> warnings;
 };
 

@@ -84,7 +84,9 @@ const std::vector<TableColumn>& tableColumns() {
         {"stretch mm", false, [](R r) { return threeDigits(r.stretchMm); }},
         {"B", false, [](R r) { return small(r.inharmonicity); }},
         {"kg/s", false, [](R r) { return threeDigits(r.impedanceKgS); }},
-        {"T60 s", false, [](R r) { return r.decayT60S.empty() ? std::string("-") : threeDigits(r.decayT60S.front()); }},
+        {"alone Hz", false, [](R r) { return fixed(r.partialsHz.front(), 2); }},
+        {"T60 s", false, [](R r) { return threeDigits(r.decayT60S.front()); }},
+        {"on board", false, [](R r) { return threeDigits(r.boardT60S.front()); }},
         {"", true, [](R r) { return std::string(r.warnings.empty() ? "" : "!"); }},
     };
     return all;

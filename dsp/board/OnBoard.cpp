@@ -108,10 +108,10 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
         const double roundTrip = 1.0 / now.partials.slope(1.0);
         const Pull pull(mobility, now.statics.impedance, roundTrip);
         Complex s(-now.partials.decayRate(1.0), 2.0 * pi * hz);
-        for (int inner = 0; inner < 30; ++inner)
+        for (int inner = 0; inner < 4; ++inner) // Y hardly depends on the decay
             s.real(-now.partials.decayRate(1.0) - pull(s).real());
         const double wanted = hz + pull(s).imag() / (2.0 * pi);
-        if (!(std::abs(cents(hz, wanted)) <= wolfCents) || pull.follows(s).real() < 0.5) {
+        if (!(std::abs(cents(hz, wanted)) <= wolfCents) || pull.follows(s).real() < leastShare) {
             auto plain = string::strungToPitch(alone.description, hz, partialCount);
             if (!plain)
                 return plain.error();

@@ -26,6 +26,8 @@ PartialOnBoard partialOnBoard(const string::Partials&, double impedance, const M
 /// Where a resonance pulls by more than this (cents) no tension brings the string to its pitch in a way that would be
 /// called in tune: a wolf.
 inline constexpr double wolfCents = 15.0;
+/// And where the string takes less part than this in its own partial, it is no longer the string that is tuned.
+inline constexpr double leastShare = 0.5;
 
 /// A string brought to pitch on the board by its tension, or, at a wolf, alone.
 struct TunedOnBoard {

@@ -60,32 +60,47 @@ MobilityAt::MobilityAt(const Bridge& bridge, double position, const std::vector<
             for (std::size_t q = 0; q < points; ++q)
                 for (const std::size_t direction : {std::size_t{0}, points})
                     load_[(direction + p) * 2 * points + direction + q] += weights[p] * weights[q] * other.impedance;
-        loaded_ = loaded_ || other.impedance > 0.0;
+        loaded_ = true;
     }
 }
 
-Mobility MobilityAt::operator()(Complex s) const {
-    if (here_.empty())
-        return {};
+/// On the stack where the bridge has few points, as bridges have.
+template <class Matrix>
+Mobility MobilityAt::loaded(Complex s) const {
     const auto size = static_cast<Eigen::Index>(remainder_.size()), points = size / 2;
-    Eigen::MatrixXcd mobility = Eigen::MatrixXcd::Zero(size, size);
+    Matrix mobility = Matrix::Zero(size, size);
     for (Eigen::Index i = 0; i < size; ++i)
         mobility(i, i) = remainder_[static_cast<std::size_t>(i)];
     for (const Part& part : parts_) {
         const double w = part.frequency;
         const Complex y = s / (part.mass * (s * s + s * (w / part.q) + w * w));
         const Eigen::Map<const Eigen::VectorXd> motion(part.motion.data(), size);
-        mobility += y * (motion * motion.transpose());
+        for (Eigen::Index j = 0; j < size; ++j)
+            mobility.col(j) += (y * motion[j]) * motion;
     }
     if (loaded_) {
         const Eigen::Map<const Eigen::MatrixXd> load(load_.data(), size, size);
-        mobility = (Eigen::MatrixXcd::Identity(size, size) + mobility * load).partialPivLu().solve(mobility).eval();
+        const Matrix inside = Matrix::Identity(size, size) + mobility * load.cast<Complex>();
+        mobility = Matrix(inside.partialPivLu().solve(mobility));
     }
     const Eigen::Map<const Eigen::VectorXd> here(here_.data(), points);
     const auto between = [&](Eigen::Index row, Eigen::Index column) {
-        return (here.transpose() * mobility.block(row, column, points, points) * here).value();
+        Complex sum = 0.0;
+        for (Eigen::Index i = 0; i < points; ++i)
+            for (Eigen::Index j = 0; j < points; ++j)
+                sum += here[i] * here[j] * mobility(row + i, column + j);
+        return sum;
     };
     return {between(0, 0), between(0, points), between(points, points)};
+}
+
+Mobility MobilityAt::operator()(Complex s) const {
+    if (here_.empty())
+        return {};
+    constexpr int few = 8;
+    if (here_.size() <= few)
+        return loaded<Eigen::Matrix<Complex, Eigen::Dynamic, Eigen::Dynamic, 0, 2 * few, 2 * few>>(s);
+    return loaded<Eigen::MatrixXcd>(s);
 }
 
 } // namespace hitchpin::board

@@ -28,4 +28,8 @@ struct InstrumentDescription {
     std::vector<CourseDescription> courses;
 };
 
+/// The bridge as one string meets it: all the other strings there at rest. None moves where the bridge is rigid or the
+/// string's end at it free.
+board::MobilityAt mobilityFor(const InstrumentDescription&, std::size_t course, std::size_t string);
+
 } // namespace hitchpin::design
