@@ -1,3 +1,4 @@
+#include "Source/console/AllPartials.h"
 #include "Source/console/Command.h"
 #include "Source/console/LongWork.h"
 #include "Source/console/Reading.h"
@@ -49,14 +50,18 @@ juce::String column(double value, int decimals, int width) {
 
 Exit run(const Arguments& arguments) {
     const auto& command = partialsCommand();
-    if (!arguments.has("--note"))
-        return wrongCall(command, "--note N is needed: which string");
-    const auto key = keyFrom(arguments);
-    if (!key)
-        return wrongCall(command, key.error().message);
+    if (arguments.has("--note") + arguments.has("--all") != 1)
+        return wrongCall(command, "one of --note N and --all is needed: which strings");
     const auto quality = qualityFrom(arguments);
     if (!quality)
         return wrongCall(command, quality.error().message);
+    if (arguments.has("--all")) {
+        const auto read = readInstrument(arguments.file());
+        return read ? printAllPartials(read->described.instrument, *quality) : failed;
+    }
+    const auto key = keyFrom(arguments);
+    if (!key)
+        return wrongCall(command, key.error().message);
     const auto read = readInstrument(arguments.file());
     if (!read)
         return failed;
@@ -132,9 +137,10 @@ Exit run(const Arguments& arguments) {
 const Command& partialsCommand() {
     static const Command command{
         "partials",
-        "FILE --note A3 [--quality live|reference]",
-        "Prints the partials of one string, predicted beside measured from the sound.",
-        {{"--note", "N", "which string: the note it sounds, as A3"},
+        "FILE --note A3 | --all [--quality live|reference]",
+        "Prints partials, predicted beside measured from the sound: of one string, or of the whole instrument.",
+        {{"--note", "N", "which string: the note it sounds, as A3, alone between its ends"},
+         {"--all", "", "all strings on their boards: every coupled partial below 5 kHz"},
          {"--quality", "Q", "reference (the default) or live"}},
         true,
         run};

@@ -1,5 +1,6 @@
 #include "dsp/analysis/Measure.h"
 
+#include "dsp/analysis/Band.h"
 #include "dsp/base/LeastSquares.h"
 
 #include <Eigen/Dense>
@@ -31,72 +32,6 @@ constexpr double suspicious = 1e-4;
 constexpr double twinShare = 0.2;
 /// Against the whole sound's mean square: weaker bands hold rounding errors alone.
 constexpr double leastShare = 1e-26;
-
-/// Kaiser (1974): window order and shape from the attenuation and the width of the transition (rad a sample).
-std::vector<double> lowPass(double cutoff, double transition, std::size_t longest) {
-    const double beta = 0.1102 * (stopbandDb - 8.7);
-    const double order = std::ceil((stopbandDb - 8.0) / (2.285 * transition));
-    const std::size_t count =
-        std::max<std::size_t>(8, std::min(longest, static_cast<std::size_t>(order) + 1));
-    std::vector<double> taps(count);
-    double sum = 0.0;
-    for (std::size_t i = 0; i < count; ++i) {
-        const double centred = static_cast<double>(i) - 0.5 * static_cast<double>(count - 1);
-        const double share = 2.0 * centred / static_cast<double>(count - 1);
-        const double window = std::cyl_bessel_i(0.0, beta * std::sqrt(std::max(0.0, 1.0 - share * share)));
-        const double angle = cutoff * centred;
-        taps[i] = window * (std::abs(angle) < 1e-12 ? 1.0 : std::sin(angle) / angle);
-        sum += taps[i];
-    }
-    for (double& tap : taps)
-        tap /= sum;
-    return taps;
-}
-
-/// The sound around one frequency, mixed down, filtered and thinned out. A damped partial stays an exact
-/// damped exponential in it: A·e^(qn) becomes A·H(q)·e^(q(first + m·step)).
-struct Band {
-    double centre = 0.0; ///< rad a sample
-    std::size_t step = 1;
-    std::size_t first = 0;
-    std::vector<double> taps;
-    Eigen::VectorXcd samples;
-
-    Complex response(Complex q) const {
-        const Complex back = std::exp(-q);
-        Complex sum = 0.0;
-        for (std::size_t i = taps.size(); i-- > 0;)
-            sum = sum * back + taps[i];
-        return sum;
-    }
-};
-
-Band bandAround(std::span<const double> sound, double centre, double gap) {
-    Band band;
-    band.centre = centre;
-    band.taps = lowPass(0.5 * gap, 0.5 * gap, sound.size() / 2);
-    band.step = std::max<std::size_t>(1, static_cast<std::size_t>(pi / gap)); // twice the gap as sample rate
-    band.first = band.taps.size() - 1;
-
-    const auto length = static_cast<Eigen::Index>(band.taps.size());
-    Eigen::VectorXd real(length), imaginary(length);
-    for (Eigen::Index k = 0; k < length; ++k) {
-        // Against the sound in its own order: tap k meets sample n − k.
-        const double angle = centre * static_cast<double>(k), tap = band.taps[static_cast<std::size_t>(k)];
-        real[length - 1 - k] = tap * std::cos(angle);
-        imaginary[length - 1 - k] = tap * std::sin(angle);
-    }
-    const std::size_t count = std::min(mostSamples, (sound.size() - band.taps.size()) / band.step + 1);
-    band.samples.resize(static_cast<Eigen::Index>(count));
-    for (std::size_t m = 0; m < count; ++m) {
-        const std::size_t last = band.first + m * band.step;
-        const Eigen::Map<const Eigen::VectorXd> piece(sound.data() + (last - band.first), length);
-        band.samples[static_cast<Eigen::Index>(m)] =
-            Complex(piece.dot(real), piece.dot(imaginary)) *
-            std::polar(1.0, -std::remainder(centre * static_cast<double>(last), 2.0 * pi));
-    }
-    return band;
-}
 
 /// One damped exponential of a band: weight·e^(rate·m).
 struct Exponential {
@@ -236,7 +171,7 @@ double addTwin(std::vector<Exponential>& poles, std::size_t main, const Eigen::V
 MeasuredPartial measureBand(std::span<const double> sound, double sampleRate, double expectedHz, double gapHz,
                             double meanSquare) {
     const double centre = 2.0 * pi * expectedHz / sampleRate, gap = 2.0 * pi * gapHz / sampleRate;
-    const Band band = bandAround(sound, centre, gap);
+    const Band band = bandAround(sound, centre, gap, stopbandDb, mostSamples);
     const auto available = static_cast<std::size_t>(band.samples.size());
     if (available < 8 ||
         !(band.samples.squaredNorm() / static_cast<double>(available) > leastShare * meanSquare))

@@ -17,7 +17,12 @@ namespace {
 
 using Complex = std::complex<double>;
 constexpr double pi = std::numbers::pi;
-constexpr int mostRounds = 80;
+constexpr int mostRounds = 96;
+/// A root that has not settled within so many rounds has lost its way among the others, and begins anew elsewhere.
+constexpr int patience = 16;
+/// Hz: steps of the look for roots that were missed, and how often it is repeated.
+constexpr double lookStep = 0.5;
+constexpr int mostLooks = 6;
 
 /// Strings with the same loop at the same place.
 struct Alike {
@@ -169,8 +174,77 @@ private:
 struct Root {
     Complex p;
     CoupledPole from;
+    Complex start = p;
+    int tries = 0;
     bool settled = false;
+
+    /// Around where it began, further each time, by the golden angle; always on the side that decays.
+    void beginAnew() {
+        ++tries;
+        const double reach = 0.25 * tries * std::max(std::abs(start.real()), 1e-4 * start.imag());
+        p = start + std::polar(reach, 2.4 * tries);
+        p.real(-std::abs(p.real()));
+    }
 };
+
+/// One step of Aberth's: Newton's for this root with all others divided out.
+void step(Root& root, const std::vector<Root>& roots, const Equation& equation) {
+    Complex others = 0.0;
+    for (const Root& other : roots)
+        if (&other != &root)
+            others += 1.0 / (root.p - other.p);
+    Complex move = 1.0 / (equation.logSlope(root.p) - others);
+    const double length = std::abs(move), longest = 0.02 * root.p.imag();
+    if (!std::isfinite(length)) {
+        root.p *= 1.0 + 1e-7;
+        return;
+    }
+    if (length > longest)
+        move *= longest / length;
+    root.p -= move;
+    // Nothing here gains: a step into growth was too long.
+    if (root.p.real() > 0.0)
+        root.p.real(-0.01 * root.p.real());
+    root.settled = length < 1e-13 + 1e-12 * std::abs(root.p);
+}
+
+/// Puts the roots that have not settled where some were missed. With all settled ones divided out, what is left of
+/// d ln g/dp along the border of growth is smooth but for 1/(p − p*) of each one missing: where it bends most,
+/// p* = p − 1/√(−slope).
+void lookForMissing(std::vector<Root>& roots, const Equation& equation, double highest, double sampleRate) {
+    const double spacing = 2.0 * pi * lookStep / sampleRate;
+    struct Bend {
+        double size;
+        Complex guess;
+    };
+    std::vector<Bend> bends;
+    std::array<Complex, 3> left{};
+    for (int i = 1; i * spacing < highest; ++i) {
+        const Complex p(0.02 * spacing, i * spacing);
+        left[0] = left[1];
+        left[1] = left[2];
+        left[2] = equation.logSlope(p);
+        for (const Root& root : roots)
+            if (root.settled)
+                left[2] -= 1.0 / (p - root.p);
+        if (i < 3 || !std::isfinite(std::abs(left[2])))
+            continue;
+        const Complex slope = (left[2] - left[0]) / Complex(0.0, 2.0 * spacing);
+        Complex away = 1.0 / std::sqrt(-slope);
+        if (away.real() < 0.0)
+            away = -away;
+        bends.push_back({std::abs(slope), p - Complex(0.0, spacing) - away});
+    }
+    std::vector<Bend> peaks;
+    for (std::size_t i = 1; i + 1 < bends.size(); ++i)
+        if (bends[i].size >= bends[i - 1].size && bends[i].size > bends[i + 1].size)
+            peaks.push_back(bends[i]);
+    std::sort(peaks.begin(), peaks.end(), [](const Bend& a, const Bend& b) { return a.size > b.size; });
+    std::size_t next = 0;
+    for (Root& root : roots)
+        if (!root.settled && next < peaks.size())
+            root.p = root.start = peaks[next++].guess;
+}
 
 /// Below one partial's own pole: its own loop on a rigid bridge.
 std::vector<Complex> ownPoles(const Alike& string, const LoopDesign& design, double highest) {
@@ -233,34 +307,24 @@ CoupledPoles coupledPoles(const InstrumentDesign& design, int bridge, double hig
     for (std::size_t m = 0; m < equation.modeCount(); ++m)
         roots.push_back({(1.0 + 1e-4 / (1.0 + static_cast<double>(m))) * equation.modePole(m), {0.0, 0.0, -1, static_cast<int>(m), false}});
 
-    std::size_t settled = 0;
-    for (int round = 0; round < mostRounds && settled < roots.size(); ++round) {
-        if (progress && !progress(static_cast<double>(settled) / static_cast<double>(roots.size())))
-            break;
-        for (Root& root : roots) {
-            if (root.settled)
-                continue;
-            Complex others = 0.0;
-            for (const Root& other : roots)
-                if (&other != &root)
-                    others += 1.0 / (root.p - other.p);
-            Complex step = 1.0 / (equation.logSlope(root.p) - others);
-            const double length = std::abs(step), longest = 0.02 * root.p.imag();
-            if (!std::isfinite(length)) {
-                root.p *= 1.0 + 1e-7;
-                continue;
-            }
-            if (length > longest)
-                step *= longest / length;
-            root.p -= step;
-            // Nothing here gains: a step into growth was too long.
-            if (root.p.real() > 0.0)
-                root.p.real(-0.01 * root.p.real());
-            if (length < 1e-13 + 1e-12 * std::abs(root.p)) {
-                root.settled = true;
-                ++settled;
+    bool goOn = true;
+    const auto settle = [&](int rounds) {
+        const auto settled = [&] { return std::count_if(roots.begin(), roots.end(), [](const Root& r) { return r.settled; }); };
+        for (int round = 0; round < rounds && goOn && settled() < std::ssize(roots); ++round) {
+            goOn = !progress || progress(static_cast<double>(settled()) / static_cast<double>(roots.size()));
+            for (Root& root : roots) {
+                if (!root.settled && round > 0 && round % patience == 0)
+                    root.beginAnew();
+                if (!root.settled)
+                    step(root, roots, equation);
             }
         }
+        return settled() == std::ssize(roots);
+    };
+    bool all = settle(mostRounds);
+    for (int look = 0; look < mostLooks && !all && goOn; ++look) {
+        lookForMissing(roots, equation, highest, design.sampleRate);
+        all = settle(3 * patience);
     }
     for (const Root& root : roots)
         if (root.settled)
