@@ -1,5 +1,7 @@
 #include "dsp/analysis/Band.h"
 
+#include <Eigen/Core>
+
 #include <algorithm>
 #include <cmath>
 #include <numbers>
@@ -59,11 +61,11 @@ Band bandAround(std::span<const double> sound, double centre, double gap, double
         imaginary[length - 1 - k] = tap * std::sin(angle);
     }
     const std::size_t count = std::min(mostSamples, (sound.size() - band.taps.size()) / band.step + 1);
-    band.samples.resize(static_cast<Eigen::Index>(count));
+    band.samples.resize(count);
     for (std::size_t m = 0; m < count; ++m) {
         const std::size_t last = band.first + m * band.step;
         const Eigen::Map<const Eigen::VectorXd> piece(sound.data() + (last - band.first), length);
-        band.samples[static_cast<Eigen::Index>(m)] =
+        band.samples[m] =
             Complex(piece.dot(real), piece.dot(imaginary)) *
             std::polar(1.0, -std::remainder(centre * static_cast<double>(last), 2.0 * pi));
     }

@@ -1,8 +1,6 @@
 // The sound around one frequency, mixed down, filtered and thinned out.
 #pragma once
 
-#include <Eigen/Core>
-
 #include <complex>
 #include <cstddef>
 #include <span>
@@ -10,14 +8,13 @@
 
 namespace hitchpin::analysis {
 
-/// A damped partial stays an exact
-/// damped exponential in it: A·e^(qn) becomes A·H(q)·e^(q(first + m·step)).
+/// A damped partial stays an exact damped exponential in it: A·e^(qn) becomes A·H(q)·e^(q(first + m·step)).
 struct Band {
     double centre = 0.0; ///< rad a sample
     std::size_t step = 1;
     std::size_t first = 0;
     std::vector<double> taps;
-    Eigen::VectorXcd samples;
+    std::vector<std::complex<double>> samples;
 
     /// H(q).
     std::complex<double> response(std::complex<double> q) const;

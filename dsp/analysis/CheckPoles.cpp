@@ -41,10 +41,11 @@ void fill(Eigen::MatrixXcd& basis, Eigen::Index column, Complex rate, bool slope
 std::vector<std::pair<std::size_t, CheckedPole>> checkBand(const Band& band, const std::vector<Member>& members,
                                                            double sampleRate) {
     const auto count = static_cast<Eigen::Index>(members.size());
-    if (band.samples.size() < 2 * count + 8)
+    const Eigen::Map<const Eigen::VectorXcd> samples(band.samples.data(), static_cast<Eigen::Index>(band.samples.size()));
+    if (samples.size() < 2 * count + 8)
         return {};
     std::vector<std::pair<std::size_t, CheckedPole>> checked;
-    Eigen::MatrixXcd basis(band.samples.size(), 2 * count);
+    Eigen::MatrixXcd basis(samples.size(), 2 * count);
     Eigen::VectorXd scale(2 * count);
     const auto solve = [&](bool withRates) {
         const Eigen::Index columns = withRates ? 2 * count : count;
@@ -54,18 +55,18 @@ std::vector<std::pair<std::size_t, CheckedPole>> checkBand(const Band& band, con
             basis.col(k) *= scale[k];
         }
         Eigen::HouseholderQR<Eigen::MatrixXcd> qr(basis.leftCols(columns));
-        const Eigen::VectorXcd solution = scale.head(columns).cwiseProduct(qr.solve(band.samples));
+        const Eigen::VectorXcd solution = scale.head(columns).cwiseProduct(qr.solve(samples));
         return std::pair(qr, solution);
     };
     const auto [plainQr, weights] = solve(false);
     const Eigen::VectorXcd missed =
-        band.samples - basis.leftCols(count) * scale.head(count).cwiseInverse().cwiseProduct(weights);
-    const double unexplained = missed.squaredNorm() / band.samples.squaredNorm();
+        samples - basis.leftCols(count) * scale.head(count).cwiseInverse().cwiseProduct(weights);
+    const double unexplained = missed.squaredNorm() / samples.squaredNorm();
     // Linearised in the rates: a·e^((r+δ)m) ≈ a·e^(rm) + aδ·m·e^(rm), so that aδ comes out beside a. What is left says
     // how well each is known.
     const auto [qr, solution] = solve(true);
-    const Eigen::VectorXcd left = band.samples - basis * scale.cwiseInverse().cwiseProduct(solution);
-    const double variance = left.squaredNorm() / static_cast<double>(band.samples.size() - 2 * count);
+    const Eigen::VectorXcd left = samples - basis * scale.cwiseInverse().cwiseProduct(solution);
+    const double variance = left.squaredNorm() / static_cast<double>(samples.size() - 2 * count);
     const Eigen::MatrixXcd upper = qr.matrixQR().topRows(2 * count).triangularView<Eigen::Upper>();
     const Eigen::MatrixXcd inverse =
         upper.triangularView<Eigen::Upper>().solve(Eigen::MatrixXcd::Identity(2 * count, 2 * count));

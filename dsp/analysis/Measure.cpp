@@ -172,17 +172,18 @@ MeasuredPartial measureBand(std::span<const double> sound, double sampleRate, do
                             double meanSquare) {
     const double centre = 2.0 * pi * expectedHz / sampleRate, gap = 2.0 * pi * gapHz / sampleRate;
     const Band band = bandAround(sound, centre, gap, stopbandDb, mostSamples);
-    const auto available = static_cast<std::size_t>(band.samples.size());
+    const Eigen::Map<const Eigen::VectorXcd> samples(band.samples.data(), static_cast<Eigen::Index>(band.samples.size()));
+    const auto available = band.samples.size();
     if (available < 8 ||
-        !(band.samples.squaredNorm() / static_cast<double>(available) > leastShare * meanSquare))
+        !(samples.squaredNorm() / static_cast<double>(available) > leastShare * meanSquare))
         return {};
 
     const double reach = 0.5 * gap * static_cast<double>(band.step);
     std::size_t count = std::min(firstCount, available);
-    std::vector<Exponential> poles = firstEstimate(band.samples.head(static_cast<Eigen::Index>(count)));
+    std::vector<Exponential> poles = firstEstimate(samples.head(static_cast<Eigen::Index>(count)));
     if (!mainPole(poles, reach, count))
         return {};
-    double residual = refine(poles, band.samples.head(static_cast<Eigen::Index>(count)));
+    double residual = refine(poles, samples.head(static_cast<Eigen::Index>(count)));
     while (count < available) {
         const auto main = mainPole(poles, reach, count);
         if (!main || poles[*main].rate.real() * static_cast<double>(count) < -20.0)
@@ -195,14 +196,14 @@ MeasuredPartial measureBand(std::span<const double> sound, double sampleRate, do
         if (poles.empty())
             return {};
         count = next;
-        residual = refine(poles, band.samples.head(static_cast<Eigen::Index>(count)));
+        residual = refine(poles, samples.head(static_cast<Eigen::Index>(count)));
     }
 
     auto main = mainPole(poles, reach, count);
     if (!main)
         return {};
     if (residual > suspicious && poles.size() < static_cast<std::size_t>(mostPoles)) {
-        residual = addTwin(poles, *main, band.samples.head(static_cast<Eigen::Index>(count)), residual);
+        residual = addTwin(poles, *main, samples.head(static_cast<Eigen::Index>(count)), residual);
         main = mainPole(poles, reach, count);
         if (!main)
             return {};

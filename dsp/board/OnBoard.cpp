@@ -98,7 +98,7 @@ PartialOnBoard partialOnBoard(const string::Partials& partials, double impedance
 Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt& mobility,
                                   int partialCount) {
     constexpr int mostRounds = 12;
-    constexpr double exact = 1e-9; // cents
+    constexpr double exact = 1e-9, reachedCents = 1e-6;
     TunedOnBoard tuned{alone};
     double ownHz = hz;
     // What pitch of its own a string needs that is to sound at `hz` follows without a search, but for what its
@@ -111,12 +111,8 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
         for (int inner = 0; inner < 4; ++inner) // Y hardly depends on the decay
             s.real(-now.partials.decayRate(1.0) - pull(s).real());
         const double wanted = hz + pull(s).imag() / (2.0 * pi);
-        if (!(std::abs(cents(hz, wanted)) <= wolfCents) || pull.follows(s).real() < leastShare) {
-            auto plain = string::strungToPitch(alone.description, hz, partialCount);
-            if (!plain)
-                return plain.error();
-            return TunedOnBoard{std::move(plain).value(), true};
-        }
+        if (!(std::abs(cents(hz, wanted)) <= 2.0 * wolfCents))
+            break;
         if (round > 0 && std::abs(cents(wanted, ownHz)) < exact)
             break;
         ownHz = wanted;
@@ -125,6 +121,17 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
             return next.error();
         tuned.strung = std::move(next).value();
     }
+    // Next to a strong resonance no tension brings it there: the string's pole jumps over that pitch.
+    const string::Strung& now = tuned.strung;
+    const PartialOnBoard reached = partialOnBoard(now.partials, now.statics.impedance, mobility, 1);
+    tuned.wolf = !(std::abs(cents(reached.frequency, hz)) < reachedCents) || std::abs(reached.shift) > wolfCents ||
+                 reached.share < leastShare;
+    if (!tuned.wolf)
+        return tuned;
+    auto plain = string::strungToPitch(alone.description, hz, partialCount);
+    if (!plain)
+        return plain.error();
+    tuned.strung = std::move(plain).value();
     return tuned;
 }
 

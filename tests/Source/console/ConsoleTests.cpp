@@ -95,7 +95,7 @@ TEST_CASE("The program says what it can do and when it is called wrongly", "[con
         {"sound wire.json --out a.wav --scale --bits 20", "sound: --bits = 20: must be 16, 24 or 32"},
         {"sound wire.json --out a.flac --scale --bits 32", "sound: --bits = 32: must be 16 or 24 in FLAC"},
         {"sound wire.json --out a.wav --scale --quality best", "sound: --quality = best: must be live or reference"},
-        {"partials wire.json", "partials: --note N is needed: which string"}};
+        {"partials wire.json", "partials: one of --note N and --all is needed: which strings"}};
     for (const auto& [arguments, message] : wrong) {
         CAPTURE(arguments);
         const auto call = shop.call(arguments);

@@ -3,6 +3,9 @@
 #include "Source/report/Schedule.h"
 #include "dsp/analysis/Measure.h"
 
+#include "Source/report/Schedule.h"
+#include "dsp/board/OnBoard.h"
+
 #include <catch2/catch.hpp>
 
 #include <algorithm>
@@ -113,7 +116,35 @@ TEST_CASE("What the sound does not follow yet is said", "[document]") {
     };
     CHECK(described(course(R"("note": "A3")")).notHeardYet.empty());
     CHECK(says(described(course(R"("note": "A3")"), R"("playing": {"with": "bow"}, )"), "bow"));
-    CHECK(says(described(course(R"("note": "A3")"), R"("bridges": [{"kind": "soundboard", "modes": [{"frequency_hz": 200, "q": 30, "mass_kg": 1}]}], )"), "modes"));
+}
+
+TEST_CASE("Strings are tuned on the board by their tension", "[document]") {
+    // A resonance above pulls the string down, so that it has to be tuned higher by itself, and the other way round.
+    const auto board = [](double hz, double kg, const char* tuned = "on the board") {
+        return juce::String(R"("tuning": {"tuned": ")") + tuned + R"("}, "bridges": [{"kind": "soundboard", "resistance_kg_s": 200, "modes": [{"frequency_hz": )" +
+               juce::String(hz) + R"(, "q": 30, "mass_kg": )" + juce::String(kg) + "}]}], ";
+    };
+    const auto onBoard = [](const document::Described& d) {
+        const auto& string = d.instrument.courses[0].strings[0];
+        return board::partialOnBoard(string.partials, string.statics.impedance, design::mobilityFor(d.instrument, 0, 0), 1);
+    };
+    for (const double hz : {180.0, 250.0}) {
+        const auto tuned = described(course(R"("note": "A3")"), board(hz, 0.3));
+        CHECK(std::abs(centsBetween(onBoard(tuned).frequency, 220.0)) < exact);
+        CHECK((first(tuned) > 220.0) == (hz > 220.0));
+        CHECK(std::abs(centsBetween(first(tuned), 220.0)) > 0.5);
+        CHECK(centsBetween(220.0, first(tuned)) == Approx(onBoard(tuned).shift).margin(exact));
+        const auto alone = described(course(R"("note": "A3")"), board(hz, 0.3, "alone"));
+        CHECK(std::abs(centsBetween(first(alone), 220.0)) < exact);
+    }
+    // Right on a light resonance no tension would do: a wolf, tuned alone and said so.
+    const auto wolf = described(course(R"("note": "A3")"), board(220.0, 0.02));
+    CHECK(std::abs(centsBetween(first(wolf), 220.0)) < exact);
+    const auto read = document::parse(R"({"format": "hitchpin-instrument", "version": 1, )" + board(220.0, 0.02) +
+                                      R"("courses": [)" + course(R"("note": "A3")") + "]}");
+    REQUIRE(read);
+    const auto warnings = report::makeSchedule(*read, wolf).courses[0].warnings;
+    CHECK(std::any_of(warnings.begin(), warnings.end(), [](const auto& w) { return w.rfind("wolf: the board's resonance at 220 Hz", 0) == 0; }));
 }
 
 TEST_CASE("A thousand courses are scheduled in under a second", "[document]") {

@@ -1,4 +1,5 @@
 // Strings on a board: the poles of loops and junction against masses and springs that know neither.
+#include "dsp/board/OnBoard.h"
 #include "dsp/design/CoupledPoles.h"
 #include "tests/support/PlainInstruments.h"
 #include "tests/support/RitzInstrument.h"
@@ -119,4 +120,35 @@ TEST_CASE("Twelve strings on a board have the poles of their masses and springs"
             instrument.courses[i].bridgePosition = (static_cast<double>(i) + 0.5) / 12.0;
         report("twelve wires, board of " + std::to_string(modes), compare(instrument, 48000.0, 14, 800.0));
     }
+}
+
+// Turned red by: the bridge's impedance for its mobility, 1/τ for 2/τ, the mode's own pole taken for the string's.
+TEST_CASE("A partial on the board is the pole of the bridge equation", "[board]") {
+    // The closed form takes the spacing of partials as steady: true to the square of the shift over the partial.
+    constexpr double cents = 0.02, decay = 0.01;
+    const auto instrument =
+        support::realDescription({RealString{"music wire", 0.65, 0.4e-3, 196.0}}, soundboard(20, 1, 7u));
+    const auto made = design::makeInstrument(instrument, {48000.0, design::Quality::reference});
+    REQUIRE(made);
+    const auto coupled = design::coupledPoles(**made, 0, 3000.0);
+    const auto& string = instrument.courses.front().strings.front();
+    double worstCents = 0.0, worstDecay = 0.0;
+    for (int n = 1; n <= 12; ++n) {
+        const auto ours = board::partialOnBoard(string.partials, string.statics.impedance,
+                                                design::mobilityFor(instrument, 0, 0), n);
+        double nearest = 1e9, off = 0.0, ring = 0.0;
+        for (const auto& pole : coupled.poles)
+            if (const double distance = std::hypot(2.0 * pi * (pole.frequency - ours.frequency), pole.decayRate - ours.decayRate);
+                distance < nearest) {
+                nearest = distance;
+                off = 1200.0 * std::log2(ours.frequency / pole.frequency);
+                ring = ours.decayRate / pole.decayRate - 1.0;
+            }
+        worstCents = std::max(worstCents, std::abs(off));
+        worstDecay = std::max(worstDecay, std::abs(ring));
+    }
+    std::cout << "closed form of one string on a board: worst " << worstCents << " cent (allowed " << cents << "), decay "
+              << 100.0 * worstDecay << " % (allowed " << 100.0 * decay << ")\n";
+    CHECK(worstCents <= cents);
+    CHECK(worstDecay <= decay);
 }
