@@ -12,7 +12,7 @@ namespace {
 
 /// All that depends on anything but the sound itself happens where the sample clock is a multiple of these, so that
 /// it cannot depend on the host's blocks.
-constexpr std::int64_t tile = Rail::longestChunk;
+constexpr std::int64_t tile = longestChunk;
 constexpr std::int64_t restCheck = 16 * tile;
 
 /// A rail with less energy rests: on a guitar string about 4e-10 N at the bridge, 214 dB under 20 N.
@@ -83,8 +83,8 @@ struct Engine::Running {
     void run(double* leftOut, double* rightOut, int count) noexcept;
     void runBridge(Bridge&, double* leftOut, double* rightOut, int count) noexcept;
     void runAlone(const String&, Rail&, Direction, double* leftOut, double* rightOut, int count) noexcept;
-    void hear(const String&, Direction, const double* force, double* leftOut, double* rightOut, int offset,
-              int count) noexcept;
+    void hear(const String&, const Rail&, Direction, const double* force, double* leftOut, double* rightOut,
+              int offset, int count) noexcept;
     void restWhatIsOver() noexcept;
 
     double energyOf(const String& string, const Rail& rail) const noexcept {
@@ -100,7 +100,7 @@ struct Engine::Running {
     Listening listening;
     std::int64_t listeningSettled = 0; ///< sample from which `heardTo` holds alone
 
-    /// Waves of the rails of one bridge within a chunk, Rail::longestChunk each.
+    /// Waves of the rails of one bridge within a chunk, longestChunk each.
     std::vector<double> waves;
     struct Port {
         const String* string;
@@ -116,9 +116,8 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     strings.reserve(design->strings.size());
     for (const auto& from : design->strings) {
         String& string = strings.emplace_back();
-        const bool freeNut = from.ends.nut == string::End::free;
         for (const auto& stop : from.stops)
-            string.stops.emplace_back(stop.loop, freeNut);
+            string.stops.emplace_back(stop, from.ends);
         string.slots.assign(slotCount, Slot{{Rail(string.stops), Rail(string.stops)}, 0});
         string.impedance = from.impedance;
         string.freeBridge = from.ends.bridge == string::End::free;
@@ -133,7 +132,7 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     for (const auto& bridge : bridges)
         mostPorts = std::max(mostPorts, bridge.strings.size() * slotCount);
     ports.reserve(mostPorts);
-    waves.assign(mostPorts * Rail::longestChunk, 0.0);
+    waves.assign(mostPorts * longestChunk, 0.0);
     reset();
 }
 
@@ -275,7 +274,7 @@ void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOu
     if (ports.empty())
         return;
 
-    std::array<double, Rail::longestChunk> velocity;
+    std::array<double, longestChunk> velocity;
     for (int offset = 0; offset < count; offset += step) {
         step = std::min(step, count - offset);
         std::fill_n(velocity.begin(), step, 0.0);
@@ -285,21 +284,21 @@ void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOu
             const double weight = 2.0 * port.string->impedance / load;
             for (int i = 0; i < step; ++i)
                 velocity[static_cast<std::size_t>(i)] += weight * wave[i];
-            wave += Rail::longestChunk;
+            wave += longestChunk;
         }
         for (int i = 0; i < step; ++i)
             bridge.peakVelocity = std::max(bridge.peakVelocity, std::abs(velocity[static_cast<std::size_t>(i)]));
         wave = waves.data();
         for (const Port& port : ports) {
-            std::array<double, Rail::longestChunk> force;
+            std::array<double, longestChunk> force;
             for (int i = 0; i < step; ++i) {
                 const double in = wave[i], out = velocity[static_cast<std::size_t>(i)] - in;
                 force[static_cast<std::size_t>(i)] = port.string->impedance * (in - out);
                 wave[i] = out;
             }
             port.rail->leave(wave, step);
-            hear(*port.string, into, force.data(), leftOut, rightOut, offset, step);
-            wave += Rail::longestChunk;
+            hear(*port.string, *port.rail, into, force.data(), leftOut, rightOut, offset, step);
+            wave += longestChunk;
         }
     }
 }
@@ -309,7 +308,7 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
                                double* rightOut, int count) noexcept {
     if (!rail.running())
         return;
-    std::array<double, Rail::longestChunk> wave, force;
+    std::array<double, longestChunk> wave, force;
     const double sign = string.freeBridge ? 1.0 : -1.0;
     int step = std::min(count, rail.delay());
     for (int offset = 0; offset < count; offset += step) {
@@ -321,12 +320,19 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
             wave[at] *= sign;
         }
         rail.leave(wave.data(), step);
-        hear(string, direction, force.data(), leftOut, rightOut, offset, step);
+        hear(string, rail, direction, force.data(), leftOut, rightOut, offset, step);
     }
 }
 
-void Engine::Running::hear(const String& string, Direction direction, const double* force, double* leftOut,
-                           double* rightOut, int offset, int count) noexcept {
+/// The force at the bridge, or where the string is listened to at another place Z0 times its velocity there.
+void Engine::Running::hear(const String& string, const Rail& rail, Direction direction, const double* force,
+                           double* leftOut, double* rightOut, int offset, int count) noexcept {
+    std::array<double, longestChunk> atPlace;
+    if (const double* velocity = rail.heard()) {
+        for (int i = 0; i < count; ++i)
+            atPlace[static_cast<std::size_t>(i)] = string.impedance * velocity[i];
+        force = atPlace.data();
+    }
     const auto& from = string.heardFrom[direction];
     const auto& to = string.heardTo[direction];
     const auto share = [&](int i) {
@@ -410,10 +416,12 @@ void Engine::pluck(int index, const Pluck& pluck) noexcept {
         if (std::abs(share[direction]) < 1e-12 || step == 0.0)
             continue;
         Rail& rail = slot.rails[direction];
-        rail.releases.add(Release(r.clock, step * share[direction],
-                                  {rail.loop().roundTrip, std::clamp(pluck.pointRatio, 0.0, 1.0),
-                                   std::max(0.0, pluck.width) * samplesPerMetre,
-                                   design.ends.nut == string::End::free, string->freeBridge}),
+        const RailLoop& loop = rail.loop();
+        rail.releases.add(Release(r.clock,
+                                  {step * share[direction], std::clamp(pluck.pointRatio, 0.0, 1.0),
+                                   std::max(0.0, pluck.width) * samplesPerMetre, loop.roundTrip, loop.period,
+                                   loop.freeNut, string->freeBridge},
+                                  loop.plucked),
                           r.clock);
         rail.wake();
         if (direction == into && string->bridge >= 0) {
@@ -519,7 +527,7 @@ double Engine::velocityAt(int index, bool isAcross, double ratioFromBridge) cons
         return 0.0;
     const Rail& rail = string->slots[static_cast<std::size_t>(string->speaking)].rails[isAcross ? across : into];
     const double roundTrip = rail.loop().roundTrip, way = 0.5 * std::clamp(ratioFromBridge, 0.0, 1.0) * roundTrip;
-    const double turned = std::copysign(1.0, rail.loop().factor);
+    const double turned = rail.loop().freeNut ? 1.0 : -1.0;
     return rail.left(way) + turned * rail.left(roundTrip - way);
 }
 
