@@ -5,13 +5,13 @@
 #include "dsp/design/LoopModel.h"
 #include "dsp/design/LoopTargets.h"
 #include "dsp/design/LossFit.h"
+#include "dsp/design/Sections.h"
 #include "dsp/string/Places.h"
 
 #include <algorithm>
 #include <cmath>
 #include <limits>
 #include <numbers>
-#include <optional>
 
 namespace hitchpin::design {
 
@@ -34,8 +34,11 @@ constexpr double margin = 2.0;
 constexpr int mostExtra = 3;
 /// Per cent of the side's loss: where that is a tenth of a neper this is −60 dB.
 constexpr double goodLossPercent = 1.5;
+/// A side shorter than this is none.
+constexpr double leastShare = 1e-4;
 /// Nepers: a level that falls by less over the whole range is flat.
 constexpr double flatLevel = 1e-3;
+constexpr double leastLevelLoss = 1e-9;
 /// Per cent of its logarithm that a level may be off, root mean square.
 constexpr double goodLevelPercent = 2.0;
 
@@ -69,6 +72,8 @@ struct Task {
             target.s = std::tanh(0.5 * pole);
         }
         target.turns = string::turnsOfSide(partials, side, share, n);
+        target.groupDelay *= share;
+        target.loss *= share;
         constexpr double centsPerNeper = 1200.0 / std::numbers::ln2;
         const auto add = [&](LoopTargets& to, double weight) {
             target.weight = 1000.0 * weight * target.p.imag() * target.groupDelay / centsPerNeper;
@@ -163,6 +168,31 @@ Judged fitFrom(Task& task, LoopModel model, int steps) {
     return best;
 }
 
+/// As it stands or after a few steps; its badness tells whether that did.
+Judged fitFromNeighbour(Task& task, const PlaceDesign& neighbour) {
+    constexpr int steps = 8;
+    const double ratio = task.loop.firstPartialHz / neighbour.firstPartialHz;
+    LoopDesign filters;
+    filters.thiran = neighbour.thiran;
+    filters.gain = neighbour.gain;
+    filters.shelves = neighbour.shelves;
+    filters.sections = neighbour.sections;
+    LoopModel model = scaled(modelOf(filters), ratio);
+    task.setLead(2.0 * static_cast<double>(model.sections.size()) + 2.0);
+    const double delay = (neighbour.delay + thiranDelay(neighbour.thiran)) / ratio + task.targets.lead;
+    model.straightDelay = std::round(delay - model.thiranDelay);
+    model.thiranDelay = delay - model.straightDelay;
+    if (model.thiranDelay < shortestThiran || model.thiranDelay > longestThiran)
+        splitDelay(model);
+
+    Judged best = judged(task, model);
+    if (best.badness <= 1.0)
+        return best;
+    fit(model, task.targets, Fitted::loss, steps);
+    fit(model, task.targets, Fitted::phase, steps);
+    return judged(task, model);
+}
+
 Judged fitSide(Task& task) {
     constexpr int steps = 30;
     const LoopModel lossy = lossySide(task);
@@ -189,7 +219,8 @@ Judged fitSide(Task& task) {
 }
 
 /// Shelves for a level that falls with frequency.
-void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampleRate, int covered, PlaceUse use) {
+void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampleRate, int covered, PlaceUse use,
+              const PlaceDesign* neighbour) {
     std::vector<LoopTarget> targets;
     double most = 0.0;
     for (double n = 1.0; n <= covered; n = std::max(n + 0.5, n * 1.15)) {
@@ -198,14 +229,27 @@ void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampl
         target.s = {0.0, std::tan(0.5 * target.p.imag())};
         target.loss = -std::log(use == PlaceUse::plucked ? string::releaseLevel(partials, n)
                                                          : string::velocityLevel(partials, n));
-        target.loss = std::max(target.loss, 1e-9);
+        target.loss = std::max(target.loss, leastLevelLoss);
         most = std::max(most, target.loss);
         targets.push_back(target);
     }
     if (most < flatLevel)
         return;
+    const auto fits = [&](const LoopModel& model) {
+        return std::all_of(targets.begin(), targets.end(), [&](const LoopTarget& target) {
+            return std::abs(logLoss(model, target.s).real() + target.loss) <=
+                   0.01 * goodLevelPercent * target.loss + flatLevel;
+        });
+    };
     LoopModel model;
-    fitLoss(model, targets, goodLevelPercent);
+    if (neighbour != nullptr && !neighbour->level.empty()) {
+        LoopDesign filters;
+        filters.gain = neighbour->levelGain;
+        filters.shelves = neighbour->level;
+        model = modelOf(filters);
+    }
+    if (model.shelves.empty() || !fits(model))
+        fitLoss(model, targets, goodLevelPercent);
     const LoopDesign fitted = designOf(model);
     place.levelGain = fitted.gain;
     place.level = fitted.shelves;
@@ -216,11 +260,22 @@ void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampl
 PlaceDesign makePlace(const string::Partials& partials, const LoopDesign& loop, PlaceUse use, double ratio,
                       const PlaceDesign* neighbour) {
     PlaceDesign place;
+    place.firstPartialHz = loop.firstPartialHz;
     place.ratio = std::clamp(ratio, 0.0, 1.0);
-    fitLevel(place, partials, loop.sampleRate, std::max(1, loop.accuracy.coveragePartial), use);
-    (void)neighbour;
+    if (neighbour != nullptr && neighbour->ratio != place.ratio)
+        neighbour = nullptr;
+    fitLevel(place, partials, loop.sampleRate, std::max(1, loop.accuracy.coveragePartial), use, neighbour);
+
+    // At an end there is no side to be fitted.
+    if (std::min(place.ratio, 1.0 - place.ratio) < leastShare)
+        return place;
     Task task(partials, loop, place.ratio);
-    const Judged best = fitSide(task);
+    Judged best;
+    if (neighbour != nullptr)
+        best = fitFromNeighbour(task, *neighbour);
+    if (best.badness > 1.0)
+        if (Judged fresh = fitSide(task); fresh.badness < best.badness)
+            best = std::move(fresh);
     const LoopDesign filters = designOf(best.model);
     place.delay = filters.delay - static_cast<int>(best.lead);
     place.thiran = filters.thiran;

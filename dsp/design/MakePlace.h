@@ -11,7 +11,8 @@ namespace hitchpin::design {
 enum class PlaceUse { plucked, heard };
 
 /// Fits S at the poles of the loop as it is, so that partials with a node there stay away. `ratio` is kept within
-/// 0…1. A place of the same use on a string a little off this one may lend its filters as a start; null for none.
+/// 0…1. The same place of a string a little off this one (the others of a unison, another fret) may lend its filters
+/// as a start; null for none.
 /// Allocates; not for the audio thread. Always gives a place; its accuracy says how true it is.
 PlaceDesign makePlace(const string::Partials&, const LoopDesign&, PlaceUse, double ratio,
                       const PlaceDesign* neighbour = nullptr);

@@ -20,6 +20,7 @@ struct PlaceAccuracy {
 ///     S(z) = gain · ∏shelves · ∏sections · thiran · z^(−delay)
 /// As it stands by default: a place at the bridge.
 struct PlaceDesign {
+    double firstPartialHz = 0.0; ///< of the string it was made for
     double ratio = 0.0; ///< of the speaking length, from the bridge; over ½ the shorter side is the nut's
     int delay = 0;      ///< whole samples
     double thiran = 1.0; ///< a in (a + z⁻¹)/(1 + a·z⁻¹); 1 passes unchanged
