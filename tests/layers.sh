@@ -12,7 +12,7 @@ declare -A allowed=(
     [dsp/tuning]='dsp/(base|tuning)/'
     [dsp/design]='dsp/(base|string|board|design)/|Eigen/'
     # The engine runs plain designed numbers: it sees their types, never how they are made.
-    [dsp/engine]='dsp/(base|engine)/|dsp/design/(InstrumentDesign|LoopDesign|ModeFilter|Sections)\.h|dsp/board/Soundboard\.h|dsp/string/Partials\.h'
+    [dsp/engine]='dsp/(base|engine)/|dsp/design/(InstrumentDesign|LoopDesign|ModeFilter|PlaceDesign|Sections)\.h|dsp/board/Soundboard\.h|dsp/string/Partials\.h'
     [dsp/playing]='dsp/(base|string|board|tuning|design|engine|playing)/'
     [dsp/analysis]='dsp/(base|analysis)/|Eigen/|unsupported/Eigen/'
     [Source/document]='dsp/|Source/document/|juce_core/'

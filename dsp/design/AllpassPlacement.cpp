@@ -26,20 +26,23 @@ AllpassSection sectionOver(double from, double to, double flatness) {
 } // namespace
 
 bool placeSections(LoopModel& model, const string::Partials& partials, double sampleRate, int coveredPartial,
-                   int sections, double flatness) {
+                   int sections, double flatness, double share, double lead) {
     const auto angle = [&](double n) { return 2.0 * pi * partials.frequency(n) / sampleRate; };
-    const auto turns = [&](double n) { return partials.ends().oneFree() ? n - 0.5 : n; };
+    const auto turns = [&](double n) {
+        return share * (partials.ends().oneFree() ? n - 0.5 : n) + lead * angle(n) / (2.0 * pi);
+    };
+    const auto needed = [&](double n) { return share * sectionsNeeded(partials, n); };
 
     // n_c: how far the sections' phase reaches.
     double last = coveredPartial;
     const double wanted = sections / 1.1;
-    while (sectionsNeeded(partials, last) < wanted &&
+    while (needed(last) < wanted &&
            partials.frequency(last * 1.02 + 0.01) < highestShareOfRate * sampleRate)
         last = last * 1.02 + 0.01;
-    const double lastAngle = angle(last), lastDelay = sampleRate / partials.slope(last);
+    const double lastAngle = angle(last), lastDelay = share * sampleRate / partials.slope(last) + lead;
 
     // Sections beyond what the string needs are spread up to half the rate.
-    const bool spread = sections > sectionsNeeded(partials, last);
+    const bool spread = sections > needed(last);
     const double straight =
         spread ? (2.0 * pi * turns(last) + lastDelay * (pi - lastAngle) - 2.0 * pi * sections) / pi
                : 2.0 * pi * (turns(last) - sections) / lastAngle;

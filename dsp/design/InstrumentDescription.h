@@ -18,6 +18,7 @@ struct CourseDescription {
     int bridge = 0;            ///< index into bridges
     double bridgePosition = 0.5; ///< 0…1 along the bridge
     double pluckRatio = 0.2;   ///< of the speaking length, from the bridge
+    double listeningRatio = 0.0; ///< the same; 0: the force at the bridge is heard, else Z0 times the velocity there
     bool hasDamper = false;
     int frets = 0;             ///< stops at L·2^(−k/12), k = 1…frets
 };

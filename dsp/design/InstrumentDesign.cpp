@@ -1,5 +1,6 @@
 #include "dsp/design/InstrumentDesign.h"
 
+#include "dsp/design/MakePlace.h"
 #include "dsp/design/ModeFilter.h"
 
 #include <algorithm>
@@ -24,9 +25,17 @@ std::string placeOf(std::size_t string, std::size_t stringCount, int stop) {
     return place;
 }
 
-SpeakingString speaking(const string::Strung& strung, LoopDesign loop) {
+SpeakingString speaking(const string::Strung& strung, LoopDesign loop, const CourseDescription& course,
+                        const SpeakingString* neighbour) {
     const double length = strung.description.speakingLength;
-    return {std::move(loop), length, strung.statics.tension, 2.0 * length * strung.partials.harmonicF0()};
+    SpeakingString string{std::move(loop), length, strung.statics.tension, 2.0 * length * strung.partials.harmonicF0(),
+                          {}, {}};
+    string.plucked = makePlace(strung.partials, string.loop, PlaceUse::plucked, course.pluckRatio,
+                               neighbour != nullptr ? &neighbour->plucked : nullptr);
+    if (course.listeningRatio > 0.0)
+        string.listening = makePlace(strung.partials, string.loop, PlaceUse::heard, course.listeningRatio,
+                                     neighbour != nullptr ? &*neighbour->listening : nullptr);
+    return string;
 }
 
 /// What the engine takes for granted.
@@ -128,17 +137,17 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
 
                 // Warm starts: the other strings of a course from the first one, each fret from the one
                 // below.
-                const LoopDesign* neighbour = nullptr;
+                const SpeakingString* neighbour = nullptr;
                 if (s > 0)
-                    neighbour = &design->strings.back().stops[static_cast<std::size_t>(stop)].loop;
+                    neighbour = &design->strings.back().stops[static_cast<std::size_t>(stop)];
                 else if (stop > 0)
-                    neighbour = &string.stops.back().loop;
-                Result<LoopDesign> loop = neighbour ? retuneLoop(*neighbour, stopped->partials, settings)
+                    neighbour = &string.stops.back();
+                Result<LoopDesign> loop = neighbour ? retuneLoop(neighbour->loop, stopped->partials, settings)
                                                     : makeLoop(stopped->partials, settings);
                 if (!loop)
                     return Failure{where() + loop.error().message};
                 design->longestT60 = std::max(design->longestT60, stopped->partials.t60(1.0));
-                string.stops.push_back(speaking(*stopped, *std::move(loop)));
+                string.stops.push_back(speaking(*stopped, *std::move(loop), course, neighbour));
                 ++loopsDone;
             }
             design->strings.push_back(std::move(string));

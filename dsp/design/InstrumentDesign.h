@@ -5,10 +5,12 @@
 #include "dsp/design/InstrumentDescription.h"
 #include "dsp/design/LoopDesign.h"
 #include "dsp/design/MakeLoop.h"
+#include "dsp/design/PlaceDesign.h"
 
 #include <atomic>
 #include <functional>
 #include <memory>
+#include <optional>
 #include <vector>
 
 namespace hitchpin::design {
@@ -19,6 +21,8 @@ struct SpeakingString {
     double speakingLength = 0.0; ///< m
     double tension = 0.0;        ///< N
     double waveSpeed = 0.0;      ///< m/s, of low partials: 2·L·f0
+    PlaceDesign plucked;         ///< at the course's ratio of this speaking length
+    std::optional<PlaceDesign> listening; ///< none: at the bridge
 };
 
 struct StringDesign {

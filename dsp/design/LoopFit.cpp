@@ -49,6 +49,9 @@ double fit(LoopModel& model, const LoopTargets& targets, Fitted what, int iterat
         else if (!target.beyond)
             still[i] = logLine(model, target.p, target.s);
     }
+    for (std::size_t i = 0; i < rows && targets.lead != 0.0; ++i)
+        if (!targetOf(i).beyond)
+            still[i] += targets.lead * targetOf(i).p;
 
     std::vector<Complex> derivatives(count);
     const double lossScale = what == Fitted::both ? 100.0 / percentPerCent : 100.0;

@@ -18,6 +18,8 @@ inline constexpr double percentPerCent = 3.0;
 struct LoopTargets {
     std::vector<LoopTarget> phase;
     std::vector<LoopTarget> loss;
+    /// Samples that the model is allowed to be later than the targets say, so that it has room for its filters.
+    double lead = 0.0;
 };
 
 /// Which constants move, and towards which targets. `sections`: the phase with the delay held.

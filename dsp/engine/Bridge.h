@@ -4,6 +4,7 @@
 #include "dsp/board/Soundboard.h"
 #include "dsp/design/InstrumentDesign.h"
 #include "dsp/design/ModeFilter.h"
+#include "dsp/engine/Chain.h"
 
 #include <vector>
 
@@ -17,9 +18,6 @@ enum Direction { across, into };
 /// Passive: what the strings lose, Σ Z(in² − out²), is Fv and goes into modes and resistance (ModeFilter.h).
 class Bridge {
 public:
-    /// Samples that one call may run.
-    static constexpr int longestChunk = 64;
-
     Bridge(const design::BridgeDesign&, double sampleRate);
 
     bool rigid() const noexcept { return size_ == 0; }

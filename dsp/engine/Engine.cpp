@@ -13,8 +13,7 @@ namespace {
 
 /// All that depends on anything but the sound itself happens where the sample clock is a multiple of these, so that
 /// it cannot depend on the host's blocks.
-constexpr std::int64_t tile = Rail::longestChunk;
-static_assert(Rail::longestChunk == Bridge::longestChunk);
+constexpr std::int64_t tile = longestChunk;
 constexpr std::int64_t restCheck = 16 * tile;
 
 /// A rail with less energy rests: on a guitar string about 4e-10 N at the bridge, 214 dB under 20 N.
@@ -92,12 +91,17 @@ struct Engine::Running {
         return string.bridge >= 0 &&
                bridges[static_cast<std::size_t>(string.bridge)].bridge.firstComponent(direction) >= 0;
     }
+    bool heardByBoard(const String& string) const noexcept {
+        return string.bridge >= 0 && bridges[static_cast<std::size_t>(string.bridge)].bridge.heardByBoard();
+    }
     void setListening(const Listening&) noexcept;
 
     void run(double* leftOut, double* rightOut, int count) noexcept;
     void runBridge(Driven&, double* leftOut, double* rightOut, int count) noexcept;
     void runAlone(const String&, Rail&, Direction, double* leftOut, double* rightOut, int count) noexcept;
-    void hear(const Gains& from, const Gains& to, const double* force, double* leftOut, double* rightOut, int offset,
+    void hearString(const String&, const Rail&, Direction, const double* force, double* leftOut, double* rightOut,
+                    int offset, int count) noexcept;
+    void hear(const Gains& from, const Gains& to, const double* heard, double* leftOut, double* rightOut, int offset,
               int count) noexcept;
     void restWhatIsOver() noexcept;
 
@@ -114,7 +118,7 @@ struct Engine::Running {
     Listening listening;
     std::int64_t listeningSettled = 0; ///< sample from which `heardTo` holds alone
 
-    /// Waves of the rails of one bridge within a chunk, Rail::longestChunk each.
+    /// Waves of the rails of one bridge within a chunk, longestChunk each.
     std::vector<double> waves;
     struct Port {
         const String* string;
@@ -131,9 +135,8 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     strings.reserve(design->strings.size());
     for (const auto& from : design->strings) {
         String& string = strings.emplace_back();
-        const bool freeNut = from.ends.nut == string::End::free;
         for (const auto& stop : from.stops)
-            string.stops.emplace_back(stop.loop, freeNut);
+            string.stops.emplace_back(stop, from.ends);
         string.slots.assign(slotCount, Slot{{Rail(string.stops), Rail(string.stops)}, 0});
         string.impedance = from.impedance;
         string.freeBridge = from.ends.bridge == string::End::free;
@@ -152,7 +155,7 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
         driven.heardTo = driven.heardFrom;
     }
     ports.reserve(mostPorts);
-    waves.assign(mostPorts * Rail::longestChunk, 0.0);
+    waves.assign(mostPorts * longestChunk, 0.0);
     reset();
 }
 
@@ -237,11 +240,8 @@ void Engine::Running::setListening(const Listening& wanted) noexcept {
         to = next;
     };
     for (String& string : strings) {
-        const bool byBoard = string.bridge >= 0 && bridges[static_cast<std::size_t>(string.bridge)].bridge.heardByBoard();
         for (const Direction direction : {across, into}) {
-            const double directed = byBoard              ? 0.0
-                                    : direction == across ? std::cos(wanted.angle)
-                                                          : std::sin(wanted.angle);
+            const double directed = direction == across ? std::cos(wanted.angle) : std::sin(wanted.angle);
             turn(string.heardFrom[direction], string.heardTo[direction],
                  gainsAt(string.position, wanted.spread, directed));
         }
@@ -317,7 +317,7 @@ void Engine::Running::runBridge(Driven& driven, double* leftOut, double* rightOu
         for (const Port& port : ports) {
             port.rail->arrive(wave, step, clock + offset);
             bridge.addDrive(port.direction, port.string->place, 2.0 * port.string->impedance, wave, step);
-            wave += Rail::longestChunk;
+            wave += longestChunk;
         }
         bridge.run(step);
         driven.peakVelocity = std::max(driven.peakVelocity, bridge.takePeak());
@@ -325,7 +325,7 @@ void Engine::Running::runBridge(Driven& driven, double* leftOut, double* rightOu
             hear(driven.heardFrom[static_cast<std::size_t>(i)], driven.heardTo[static_cast<std::size_t>(i)],
                  bridge.heard(i), leftOut, rightOut, offset, step);
         wave = waves.data();
-        std::array<double, Rail::longestChunk> velocity, force;
+        std::array<double, longestChunk> velocity, force;
         for (const Port& port : ports) {
             bridge.velocity(port.direction, port.string->place, velocity.data(), step);
             for (int i = 0; i < step; ++i) {
@@ -335,10 +335,8 @@ void Engine::Running::runBridge(Driven& driven, double* leftOut, double* rightOu
                 wave[i] = out;
             }
             port.rail->leave(wave, step);
-            if (!bridge.heardByBoard())
-                hear(port.string->heardFrom[port.direction], port.string->heardTo[port.direction], force.data(), leftOut,
-                     rightOut, offset, step);
-            wave += Rail::longestChunk;
+            hearString(*port.string, *port.rail, port.direction, force.data(), leftOut, rightOut, offset, step);
+            wave += longestChunk;
         }
     }
 }
@@ -348,7 +346,7 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
                                double* rightOut, int count) noexcept {
     if (!rail.running())
         return;
-    std::array<double, Rail::longestChunk> wave, force;
+    std::array<double, longestChunk> wave, force;
     const double sign = string.freeBridge ? 1.0 : -1.0;
     int step = std::min(count, rail.delay());
     for (int offset = 0; offset < count; offset += step) {
@@ -360,11 +358,25 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
             wave[at] *= sign;
         }
         rail.leave(wave.data(), step);
-        hear(string.heardFrom[direction], string.heardTo[direction], force.data(), leftOut, rightOut, offset, step);
+        hearString(string, rail, direction, force.data(), leftOut, rightOut, offset, step);
     }
 }
 
-void Engine::Running::hear(const Gains& from, const Gains& to, const double* force, double* leftOut, double* rightOut,
+/// The force at the bridge, or where the string is listened to at another place Z0 times its velocity there.
+void Engine::Running::hearString(const String& string, const Rail& rail, Direction direction, const double* force,
+                                 double* leftOut, double* rightOut, int offset, int count) noexcept {
+    std::array<double, longestChunk> atPlace;
+    if (const double* velocity = rail.heard()) {
+        for (int i = 0; i < count; ++i)
+            atPlace[static_cast<std::size_t>(i)] = string.impedance * velocity[i];
+        force = atPlace.data();
+    } else if (heardByBoard(string)) {
+        return;
+    }
+    hear(string.heardFrom[direction], string.heardTo[direction], force, leftOut, rightOut, offset, count);
+}
+
+void Engine::Running::hear(const Gains& from, const Gains& to, const double* heard, double* leftOut, double* rightOut,
                            int offset, int count) noexcept {
     const auto share = [&](int i) {
         const std::int64_t toGo = listeningSettled - (clock + offset + i);
@@ -374,10 +386,10 @@ void Engine::Running::hear(const Gains& from, const Gains& to, const double* for
     const auto add = [&](double* sum, double a, double b) {
         if (moving) {
             for (int i = 0; i < count; ++i)
-                sum[i] += (a + share(i) * (b - a)) * force[i];
+                sum[i] += (a + share(i) * (b - a)) * heard[i];
         } else {
             for (int i = 0; i < count; ++i)
-                sum[i] += b * force[i];
+                sum[i] += b * heard[i];
         }
     };
     if (rightOut == nullptr) {
@@ -446,10 +458,12 @@ void Engine::pluck(int index, const Pluck& pluck) noexcept {
         if (std::abs(share[direction]) < 1e-12 || step == 0.0)
             continue;
         Rail& rail = slot.rails[direction];
-        rail.releases.add(Release(r.clock, step * share[direction],
-                                  {rail.loop().roundTrip, std::clamp(pluck.pointRatio, 0.0, 1.0),
-                                   std::max(0.0, pluck.width) * samplesPerMetre,
-                                   design.ends.nut == string::End::free, string->freeBridge}),
+        const RailLoop& loop = rail.loop();
+        rail.releases.add(Release(r.clock,
+                                  {step * share[direction], std::clamp(pluck.pointRatio, 0.0, 1.0),
+                                   std::max(0.0, pluck.width) * samplesPerMetre, loop.roundTrip, loop.period,
+                                   loop.freeNut, string->freeBridge},
+                                  loop.plucked),
                           r.clock);
         rail.wake();
         if (r.movesWith(*string, direction)) {
@@ -562,7 +576,7 @@ double Engine::velocityAt(int index, bool isAcross, double ratioFromBridge) cons
         return 0.0;
     const Rail& rail = string->slots[static_cast<std::size_t>(string->speaking)].rails[isAcross ? across : into];
     const double roundTrip = rail.loop().roundTrip, way = 0.5 * std::clamp(ratioFromBridge, 0.0, 1.0) * roundTrip;
-    const double turned = std::copysign(1.0, rail.loop().factor);
+    const double turned = rail.loop().freeNut ? 1.0 : -1.0;
     return rail.left(way) + turned * rail.left(roundTrip - way);
 }
 

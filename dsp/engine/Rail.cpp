@@ -5,34 +5,41 @@
 
 namespace hitchpin::engine {
 
-RailLoop::RailLoop(const design::LoopDesign& design, bool freeNut)
-    : delay(std::max(1, design.delay)),
-      // Partial 1 goes round in one period, or in half a one where one end is free.
-      roundTrip((design.turn < 0.0 ? 0.5 : 1.0) * design.sampleRate / design.firstPartialHz),
-      factor(freeNut ? design.gain : -design.gain), thiranSin(design.thiran),
-      thiranCos(std::sqrt((1.0 - design.thiran) * (1.0 + design.thiran))) {
-    for (const auto& shelf : design.shelves)
-        shelves.push_back({shelf.b0, shelf.a1, shelf.b1 - shelf.a1 * shelf.b0});
-    for (const auto& section : design.sections)
-        sections.push_back(design::ladderForm(section));
+RailLoop::RailLoop(const design::SpeakingString& from, const string::Ends& ends)
+    : delay(std::max(1, from.loop.delay)), period(from.loop.sampleRate / from.loop.firstPartialHz),
+      freeNut(ends.nut == string::End::free),
+      chain(freeNut ? from.loop.gain : -from.loop.gain, from.loop.thiran, from.loop.shelves, from.loop.sections),
+      plucked(from.plucked) {
+    // Partial 1 goes round in one period, or in half a one where one end is free.
+    roundTrip = (from.loop.turn < 0.0 ? 0.5 : 1.0) * period;
+    if (from.listening)
+        listening.emplace(*from.listening);
 }
 
 Rail::Rail(const std::vector<RailLoop>& loops) : loop_(&loops.front()) {
-    std::size_t longest = 0, shelves = 0, sections = 0;
+    std::size_t longest = 0, waiting = 0;
+    bool listened = false;
     for (const auto& loop : loops) {
         // A whole round trip stays in the line, so that the motion can be looked at.
         longest = std::max({longest, static_cast<std::size_t>(loop.delay),
                             static_cast<std::size_t>(std::ceil(loop.roundTrip))});
-        shelves = std::max(shelves, loop.shelves.size());
-        sections = std::max(sections, loop.sections.size());
+        chain_.makeRoomFor(loop.chain);
+        releases.makeRoomFor(loop.plucked);
+        if (loop.listening) {
+            listened = true;
+            listeningSide_.makeRoomFor(loop.listening->side);
+            listeningLevel_.makeRoomFor(loop.listening->level);
+            waiting = std::max(waiting, static_cast<std::size_t>(std::max(0, -loop.listening->delay)));
+            longest = std::max(longest, static_cast<std::size_t>(std::max(0, loop.listening->delay)));
+        }
     }
+    if (listened)
+        arrived_.assign(waiting + longestChunk, 0.0);
     std::size_t size = 1;
     while (size < longest + longestChunk + 4)
         size *= 2;
     line_.assign(size, 0.0);
     mask_ = size - 1;
-    shelfStates_.assign(shelves, 0.0);
-    sectionStates_.assign(sections, {});
 }
 
 void Rail::speak(const RailLoop& loop) noexcept {
@@ -43,9 +50,10 @@ void Rail::speak(const RailLoop& loop) noexcept {
 
 void Rail::clear() noexcept {
     std::fill(line_.begin(), line_.end(), 0.0);
-    std::fill(shelfStates_.begin(), shelfStates_.end(), 0.0);
-    std::fill(sectionStates_.begin(), sectionStates_.end(), LadderState{});
-    thiranState_ = 0.0;
+    std::fill(arrived_.begin(), arrived_.end(), 0.0);
+    chain_.clear();
+    listeningSide_.clear();
+    listeningLevel_.clear();
     next_ = 0;
     running_ = false;
     presence.jump(1.0);
@@ -58,77 +66,66 @@ void Rail::arrive(double* wave, int count, std::int64_t now) noexcept {
     for (int i = 0; i < count; ++i)
         wave[i] = line_[read++ & mask_];
 
-    // Filter by filter over the chunk: coefficients and state stay in registers.
-    for (std::size_t k = 0; k < loop.shelves.size(); ++k) {
-        const auto [b0, a1, c] = loop.shelves[k];
-        double m = shelfStates_[k];
-        for (int i = 0; i < count; ++i) {
-            const double x = wave[i];
-            wave[i] = b0 * x + c * m;
-            m = x - a1 * m;
-        }
-        shelfStates_[k] = m;
-    }
-    for (std::size_t k = 0; k < loop.sections.size(); ++k) {
-        const auto [k1, q1, k2, q2] = loop.sections[k];
-        auto [m1, m2] = sectionStates_[k];
-        for (int i = 0; i < count; ++i) {
-            const double x = wave[i];
-            const double w = q2 * x - k2 * m2;
-            wave[i] = k2 * x + q2 * m2;
-            m2 = k1 * w + q1 * m1;
-            m1 = q1 * w - k1 * m1;
-        }
-        sectionStates_[k] = {m1, m2};
-    }
-    {
-        const double sine = loop.thiranSin, cosine = loop.thiranCos;
-        double m = thiranState_;
-        for (int i = 0; i < count; ++i) {
-            const double x = wave[i];
-            wave[i] = loop.factor * (sine * x + cosine * m);
-            m = cosine * x - sine * m;
-        }
-        thiranState_ = m;
-    }
-
+    chain_.run(loop.chain, wave, count);
     if (!hold.isOne())
         for (int i = 0; i < count; ++i)
             wave[i] *= hold.next();
     if (releases.pending())
-        releases.addTo(wave, count, now);
+        releases.addTo(wave, count, now, loop.plucked);
     if (!presence.isOne())
         for (int i = 0; i < count; ++i)
             wave[i] *= presence.next();
+    if (loop.listening)
+        std::copy_n(wave, count, arrived_.end() - longestChunk);
 }
 
 void Rail::leave(const double* wave, int count) noexcept {
     for (int i = 0; i < count; ++i)
         line_[next_++ & mask_] = wave[i];
+    if (loop_->listening)
+        listen(*loop_->listening, count);
+}
+
+/// Where the bridge is the nearer end, a wave passes the place on its way to it and, having left, once more: in + S·out.
+/// Where the nut is, the wave that left the bridge passes there and comes back turned over: out ± S·out. All of it half
+/// a round trip of that side late.
+void Rail::listen(const Place& place, int count) noexcept {
+    const double returns = place.end.isBridge || loop_->freeNut ? 1.0 : -1.0;
+    const auto leftBefore = [&](double* wave, int samples) {
+        std::size_t read = next_ - static_cast<std::size_t>(count + samples);
+        for (int i = 0; i < count; ++i)
+            wave[i] = line_[read++ & mask_];
+    };
+    std::array<double, longestChunk> returned;
+    leftBefore(returned.data(), std::max(0, place.delay));
+    listeningSide_.run(place.side, returned.data(), count);
+
+    const int waits = std::max(0, -place.delay);
+    if (place.end.isBridge)
+        std::copy_n(arrived_.end() - longestChunk - waits, count, heard_.begin());
+    else
+        leftBefore(heard_.data(), waits);
+    std::move(arrived_.begin() + count, arrived_.end() - longestChunk + count, arrived_.begin());
+
+    for (int i = 0; i < count; ++i)
+        heard_[static_cast<std::size_t>(i)] += returns * returned[static_cast<std::size_t>(i)];
+    listeningLevel_.run(place.level, heard_.data(), count);
 }
 
 double Rail::sumOfSquares() const noexcept {
-    double sum = thiranState_ * thiranState_;
+    double sum = chain_.sumOfSquares(loop_->chain);
     for (int age = 1; age <= loop_->delay; ++age) {
         const double wave = line_[(next_ - static_cast<std::size_t>(age)) & mask_];
         sum += wave * wave;
     }
-    for (const auto& [m1, m2] : sectionStates_)
-        sum += m1 * m1 + m2 * m2;
-    for (std::size_t k = 0; k < loop_->shelves.size(); ++k)
-        sum += std::abs(loop_->shelves[k].c) * shelfStates_[k] * shelfStates_[k];
     return sum;
 }
 
 void Rail::flush() noexcept {
-    const auto flushed = [](double state) { return std::abs(state) < 1e-60 ? 0.0 : state; };
-    thiranState_ = flushed(thiranState_);
-    for (auto& [m1, m2] : sectionStates_) {
-        m1 = flushed(m1);
-        m2 = flushed(m2);
-    }
-    for (double& state : shelfStates_)
-        state = flushed(state);
+    chain_.flush();
+    listeningSide_.flush();
+    listeningLevel_.flush();
+    releases.flush(loop_->plucked);
 }
 
 double Rail::left(double age) const noexcept {

@@ -1,43 +1,34 @@
 // One string in one direction: a loop of velocity waves between nut and bridge.
 #pragma once
 
-#include "dsp/design/LoopDesign.h"
-#include "dsp/design/Sections.h"
+#include "dsp/design/InstrumentDesign.h"
+#include "dsp/engine/Chain.h"
 #include "dsp/engine/Ramp.h"
 #include "dsp/engine/Release.h"
 
+#include <array>
 #include <cstdint>
+#include <optional>
 #include <vector>
 
 namespace hitchpin::engine {
 
-/// A designed loop in the forms that a rail runs. Every form stores a known energy and none makes any:
-/// the ladders keep the sum of squares exactly; a shelf y = b0·x + c·m, m' = x − a1·m, c = b1 − a1·b0, obeys
-/// y² + |c|·m'² ≤ x² + |c|·m² whenever |H| ≤ 1 on the circle. (Bounded-real lemma for one state: a weight p serves
-/// if p² − [(1−b0²)(1−a1²) + c² + 2·a1·b0·c]·p + c² ≤ 0; the two bounds of p have the product c², so p = |c|
-/// lies between them whenever any p does.)
+/// A string as it speaks from one stop, in the forms that a rail runs.
 struct RailLoop {
-    struct Shelf {
-        double b0, a1, c;
-    };
-
-    RailLoop(const design::LoopDesign&, bool freeNut);
+    RailLoop(const design::SpeakingString&, const string::Ends&);
 
     int delay;        ///< samples, at least 1
     double roundTrip; ///< samples that a wave takes once round, at the first partial
-    double factor;    ///< the design's gain with the sign of the reflection at the nut
-    double thiranSin; ///< the fractional delay as a plane rotation
-    double thiranCos;
-    std::vector<Shelf> shelves;
-    std::vector<design::LadderForm> sections;
+    double period;    ///< samples, of the first partial
+    bool freeNut;
+    Chain chain;      ///< all but the delay, with the sign of the reflection at the nut
+    Place plucked;
+    std::optional<Place> listening;
 };
 
 /// Constructing allocates for all loops that the rail will ever run; the rest is real-time safe.
 class Rail {
 public:
-    /// Chunks longer than this are never asked for.
-    static constexpr int longestChunk = 64;
-
     explicit Rail(const std::vector<RailLoop>& loops);
 
     /// From now on this loop, at rest.
@@ -53,6 +44,9 @@ public:
     void arrive(double* wave, int count, std::int64_t now) noexcept;
     /// Waves that leave the bridge in the same samples.
     void leave(const double* wave, int count) noexcept;
+    /// What is heard of those samples where the string is listened to at a place: its velocity there, m/s. Null where
+    /// the bridge is listened to.
+    const double* heard() const noexcept { return loop_->listening ? heard_.data() : nullptr; }
 
     int delay() const noexcept { return loop_->delay; }
     const RailLoop& loop() const noexcept { return *loop_; }
@@ -77,12 +71,13 @@ private:
     const RailLoop* loop_;
     bool running_ = false;
 
-    struct LadderState {
-        double m1 = 0.0, m2 = 0.0;
-    };
-    std::vector<LadderState> sectionStates_;
-    std::vector<double> shelfStates_;
-    double thiranState_ = 0.0;
+    ChainState chain_;
+
+    void listen(const Place&, int count) noexcept;
+    std::vector<double> arrived_; ///< as far back as any place of listening waits, then the newest chunk
+    std::array<double, longestChunk> heard_{};
+    ChainState listeningSide_;
+    ChainState listeningLevel_;
 };
 
 } // namespace hitchpin::engine

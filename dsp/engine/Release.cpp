@@ -48,70 +48,121 @@ double edgeIntegral(double t) noexcept {
            kernelLength / (2.0 * std::numbers::pi * std::numbers::pi) * sum;
 }
 
-double slope(double t) noexcept { return std::clamp(t, 0.0, 1.0); }
-
 } // namespace
 
 double edge(double t, double width) noexcept {
+    const double reach = edgeReach + 0.5 * width;
+    if (t <= -reach)
+        return 0.0;
+    if (t >= reach)
+        return 1.0;
     // Under a thousandth of a sample the difference below would only lose digits.
     if (width < 1e-3)
         return sharpEdge(t);
     return (edgeIntegral(t + 0.5 * width) - edgeIntegral(t - 0.5 * width)) / width;
 }
 
-Release::Release(std::int64_t start, double stepVelocity, const Place& place) noexcept
-    : start_(start), step_(stepVelocity), reflected_(place.freeNut ? -stepVelocity : stepVelocity),
-      direct_(0.5 * place.ratio * place.roundTrip), returned_(place.roundTrip - direct_),
-      roundTrip_(place.roundTrip),
-      // A finger no wider than what lies between its middle and the nearer end.
-      width_(std::clamp(place.width, 0.0, 2.0 * std::min(direct_, 0.5 * roundTrip_ - direct_))) {
-    if (place.freeBridge)
-        pull_ = place.freeNut ? 2.0 * step_ : 0.0;
-    else
-        pull_ = place.freeNut ? step_ : step_ * (1.0 - place.ratio);
-    pullBack_ = step_ - reflected_ - pull_;
-
-    const double reach = edgeReach + 0.5 * width_;
-    const double lead = std::max(0.0, reach - direct_);
-    origin_ = static_cast<double>(start) + lead;
-    end_ = start + static_cast<std::int64_t>(std::ceil(lead + std::max(2.0 * roundTrip_, returned_ + reach)));
+/// k = 1 − 4/3·cos(2πx) + 1/3·cos(4πx) on 0…1, its mean ½. That of k' is −1, so ∫x·(k + ½k') = 0 and with it the sum of
+/// what is sent.
+double letGo(double t, double width, double length) noexcept {
+    const double x = t / length;
+    if (x >= 1.0)
+        return 0.0;
+    const double step = edge(t, width);
+    if (x <= 0.0)
+        return step;
+    const double angle = 2.0 * std::numbers::pi * x, cosine = std::cos(angle), sine = std::sin(angle);
+    const double kernel = 1.0 - 4.0 / 3.0 * cosine + (2.0 * cosine * cosine - 1.0) / 3.0;
+    const double integral = x - sine * (4.0 - cosine) / (6.0 * std::numbers::pi);
+    return step - integral - 0.5 * kernel;
 }
 
-double Release::at(double time) const noexcept {
-    if (time >= static_cast<double>(end_))
-        return 0.0;
-    const double t = time - origin_;
-    return pull_ * slope(t / roundTrip_) + pullBack_ * slope(t / roundTrip_ - 1.0) -
-           step_ * edge(t - direct_, width_) + reflected_ * edge(t - returned_, width_);
+Release::Release(std::int64_t start, const From& from, const Place& place) noexcept
+    : length_(periodsToFade * from.period) {
+    const NearerEnd end(from.ratio);
+    const double turned = (end.isBridge ? from.freeBridge : from.freeNut) ? 1.0 : -1.0;
+    directStep_ = end.isBridge ? -turned * from.step : -from.step;
+    returnedStep_ = turned * directStep_;
+    // A finger no wider than what lies between its middle and the nearer end.
+    width_ = std::clamp(from.width, 0.0, end.share * from.roundTrip);
+
+    const double delay = place.delay + (end.share - place.end.share) * from.roundTrip;
+    const double first = static_cast<double>(start) + edgeReach + 0.5 * width_;
+    directAt_ = first + std::max(0.0, -delay);
+    returnedAt_ = first + std::max(0.0, delay);
+    end_ = static_cast<std::int64_t>(std::ceil(std::max(directAt_, returnedAt_) + length_));
+}
+
+double Release::direct(std::int64_t time) const noexcept {
+    return directStep_ * letGo(static_cast<double>(time) - directAt_, width_, length_);
+}
+
+double Release::returned(std::int64_t time) const noexcept {
+    return returnedStep_ * letGo(static_cast<double>(time) - returnedAt_, width_, length_);
+}
+
+void Releases::makeRoomFor(const Place& place) {
+    side_.makeRoomFor(place.side);
+    level_.makeRoomFor(place.level);
 }
 
 void Releases::add(const Release& release, std::int64_t now) noexcept {
     if (count_ == static_cast<int>(releases_.size())) {
-        sinking_ += releases_.front().at(static_cast<double>(now));
+        sinkingDirect_ += releases_.front().direct(now);
+        sinkingReturned_ += releases_.front().returned(now);
         std::move(releases_.begin() + 1, releases_.end(), releases_.begin());
         --count_;
     }
     releases_[static_cast<std::size_t>(count_++)] = release;
+    exciting_ = true;
 }
 
-void Releases::addTo(double* wave, int count, std::int64_t now) noexcept {
+void Releases::addTo(double* wave, int count, std::int64_t now, const Place& place) noexcept {
+    std::array<double, longestChunk> direct, returned;
+    std::fill_n(direct.begin(), count, 0.0);
+    std::fill_n(returned.begin(), count, 0.0);
     for (int r = 0; r < count_; ++r)
-        for (int i = 0; i < count; ++i)
-            wave[i] += releases_[static_cast<std::size_t>(r)].at(static_cast<double>(now + i));
-    if (sinking_ != 0.0) {
         for (int i = 0; i < count; ++i) {
-            wave[i] += sinking_;
-            sinking_ = std::abs(sinking_) > 1e-30 ? 0.9 * sinking_ : 0.0;
+            const auto at = static_cast<std::size_t>(i);
+            direct[at] += releases_[static_cast<std::size_t>(r)].direct(now + i);
+            returned[at] += releases_[static_cast<std::size_t>(r)].returned(now + i);
         }
-    }
+    const auto sink = [&](double& sinking, auto& sum) {
+        for (int i = 0; i < count && sinking != 0.0; ++i) {
+            sum[static_cast<std::size_t>(i)] += sinking;
+            sinking = std::abs(sinking) > 1e-30 ? 0.9 * sinking : 0.0;
+        }
+    };
+    sink(sinkingDirect_, direct);
+    sink(sinkingReturned_, returned);
+
+    side_.run(place.side, returned.data(), count);
+    for (int i = 0; i < count; ++i)
+        direct[static_cast<std::size_t>(i)] += returned[static_cast<std::size_t>(i)];
+    level_.run(place.level, direct.data(), count);
+    for (int i = 0; i < count; ++i)
+        wave[i] += direct[static_cast<std::size_t>(i)];
+
     const auto last = std::remove_if(releases_.begin(), releases_.begin() + count_,
                                      [&](const Release& release) { return release.over(now + count); });
     count_ = static_cast<int>(last - releases_.begin());
 }
 
+void Releases::flush(const Place& place) noexcept {
+    if (!exciting_ || count_ > 0 || sinkingDirect_ != 0.0 || sinkingReturned_ != 0.0)
+        return;
+    // Far below what the loops of the engine call rest.
+    constexpr double deadSumOfSquares = 1e-24; // (m/s)²
+    if (side_.sumOfSquares(place.side) + level_.sumOfSquares(place.level) < deadSumOfSquares)
+        clear();
+}
+
 void Releases::clear() noexcept {
     count_ = 0;
-    sinking_ = 0.0;
+    sinkingDirect_ = sinkingReturned_ = 0.0;
+    exciting_ = false;
+    side_.clear();
+    level_.clear();
 }
 
 } // namespace hitchpin::engine

@@ -1,5 +1,7 @@
-// What a string that was held aside and let go sends to its bridge. Closed forms, no state but the start.
+// What a string that was held aside and let go sends to its bridge.
 #pragma once
+
+#include "dsp/engine/Place.h"
 
 #include <array>
 #include <cstdint>
@@ -12,61 +14,78 @@ namespace hitchpin::engine {
 double edge(double t, double width) noexcept;
 inline constexpr double edgeReach = 8.0;
 
-/// One release. A force F on a point at ratio β from the bridge bends the string into a triangle; letting go is a
-/// step of force −F, which sends a step of velocity a = F/2Z both ways. At the bridge (T_r the round trip):
-///     −a from t1 = β·T_r/2,   and from t2 = T_r − t1 its reflection from the nut: +a where that is rigid, −a where
-///     it is free.
-/// After one round trip the loop repeats this by itself. The shape that was held adds the static pull: for rigid
-/// ends F(1−β), so that the bridge force goes to and fro between F(1−β) and −Fβ (partials ∝ sin(nπβ)/n) around
-/// a mean of nought. An ear hears no constant, so the pull comes in as a slope over the first round trip rather
-/// than as a jump; a slope taken back one round trip later leaves nothing in any partial n ≥ 1. With both ends free
-/// nothing holds against the hand: the string's own inertia does, and the slope stays.
-/// Sources: Fletcher and Rossing, The Physics of Musical Instruments, ch. 2 (ideal pluck; from memory).
+/// What one point sends when it lets go, 1 before any shaping: a step up at t = 0 (an edge of that width) that fades
+/// again over `length`, below nought for a while, so that its sum is nought: a string whose ends cannot hold it is not
+/// sent away. The fade is the integral of a smooth kernel k + ½k', k ∝ (1 − cos)², whose spectrum has its zeros at
+/// the harmonics of 1/length from the third up: over four periods of the first partial it excites none of them.
+double letGo(double t, double width, double length) noexcept;
+inline constexpr double periodsToFade = 4.0;
+
+/// One release. A force F held a string aside at ratio β from the bridge; letting go is a step of force −F, which
+/// sends a step of velocity a = F/2Z both ways. The two reach the bridge one after the other, and its loop repeats
+/// them. Seen from there they differ by the round trip S of the shorter side, whose end turns the wave over by s
+/// (−1 rigid, +1 free). But for a common delay:
+///     −a·(1 + s·S)    where the nut is nearer,    s·(−a)·(1 + s·S)    where the bridge is,
+/// since the wave that comes later from the nut is the one that left the bridge earlier. So partial n rings by
+/// |1 − S| = 2·sin(nπβ), and one with a node there not at all. The string's stiffness enters by S and by the level
+/// of dsp/string/Places.h, both filters that the design brings; all releases of a rail share them.
+/// A point other than the one designed uses the same filters with more or less delay: exact without stiffness, close
+/// to it otherwise. A width spreads the step over w/c.
 class Release {
 public:
-    struct Place {
-        double roundTrip; ///< samples, T_r
+    struct From {
+        double step;      ///< a, m/s
         double ratio;     ///< β
         double width;     ///< samples of travel that the finger covers
+        double roundTrip; ///< samples
+        double period;    ///< samples, of the first partial
         bool freeNut;
         bool freeBridge;
     };
 
     Release() = default;
-    Release(std::int64_t start, double stepVelocity, const Place&) noexcept;
+    Release(std::int64_t start, const From&, const Place&) noexcept;
 
-    /// Velocity wave arriving at the bridge at a sample, or between two, counted as `start` is.
-    double at(double time) const noexcept;
+    /// What is sent by itself and what takes the round trip of the side, before the filters, at a sample counted as
+    /// `start` is. Neither begins before `start`.
+    double direct(std::int64_t time) const noexcept;
+    double returned(std::int64_t time) const noexcept;
     bool over(std::int64_t time) const noexcept { return time >= end_; }
-    std::int64_t start() const noexcept { return start_; }
 
 private:
-    std::int64_t start_ = 0;
     std::int64_t end_ = 0;
-    double origin_ = 0.0;     ///< where t = 0 lies, so that no edge begins before `start`
-    double step_ = 0.0;       ///< a, m/s
-    double reflected_ = 0.0;  ///< what the nut sends back, m/s
-    double pull_ = 0.0;       ///< slope within the first round trip, m/s
-    double pullBack_ = 0.0;   ///< and within the second
-    double direct_ = 0.0;     ///< t1
-    double returned_ = 0.0;   ///< t2
-    double roundTrip_ = 1.0;
+    double directAt_ = 0.0; ///< sample, also between two, at which its step is
+    double returnedAt_ = 0.0;
+    double directStep_ = 0.0; ///< m/s
+    double returnedStep_ = 0.0;
     double width_ = 0.0;
+    double length_ = 1.0;
 };
 
-/// The releases still going on in one rail. A ninth at once ends the oldest early: what it was sending sinks to
-/// nothing within a few samples, so that there is no click.
+/// The releases still going on in one rail, and the filters of the place. A ninth at once ends the oldest early: what
+/// it was sending sinks to nothing within a few samples, so that there is no click.
 class Releases {
 public:
+    /// Allocates, for a place that may be given later.
+    void makeRoomFor(const Place&);
+
     void add(const Release&, std::int64_t now) noexcept;
-    void addTo(double* wave, int count, std::int64_t now) noexcept;
-    bool pending() const noexcept { return count_ > 0 || sinking_ != 0.0; }
+    /// `count` at most longestChunk; the place is the same until `clear`.
+    void addTo(double* wave, int count, std::int64_t now, const Place&) noexcept;
+    /// Until what the filters hold has died away too.
+    bool pending() const noexcept { return exciting_; }
+    /// Call at fixed times of the clock: ends what has died away.
+    void flush(const Place&) noexcept;
     void clear() noexcept;
 
 private:
     std::array<Release, 8> releases_; ///< oldest first
     int count_ = 0;
-    double sinking_ = 0.0;
+    double sinkingDirect_ = 0.0;
+    double sinkingReturned_ = 0.0;
+    bool exciting_ = false;
+    ChainState side_;
+    ChainState level_;
 };
 
 } // namespace hitchpin::engine

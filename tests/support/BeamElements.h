@@ -12,13 +12,21 @@
 
 namespace hitchpin::support {
 
-/// f_1…f_count over F0 = √(T/μ)/2L, from generalised eigenvalues of cubic beam elements with tension (consistent
-/// matrices: Przemieniecki, Theory of Matrix Structural Analysis; from memory). `mass` is the linear density at
-/// x in 0…1 over that of F0, constant within an element: put element borders on its steps. The frequency of a beam comes
-/// out too high by about (kh)⁴/1440 of itself, k the wave number and h the element.
-inline std::vector<double> beamRatios(double inharmonicity, string::Ends ends, int count,
-                                      const std::vector<double>& borders,
-                                      const std::function<double(double)>& mass = [](double) { return 1.0; }) {
+/// Stiffness and mass of cubic beam elements with tension (consistent matrices: Przemieniecki, Theory of Matrix
+/// Structural Analysis; from memory) for T = μ = L = 1. At each border, from the nut at 0 to the bridge at 1, a
+/// displacement and a slope. `free`: those that the ends leave free.
+struct BeamSystem {
+    Eigen::MatrixXd k, m;
+    std::vector<int> free;
+
+    template <class Matrix>
+    Eigen::MatrixXd freePart(const Matrix& of) const {
+        return of(free, free);
+    }
+};
+
+inline BeamSystem beamSystem(double inharmonicity, string::Ends ends, const std::vector<double>& borders,
+                             const std::function<double(double)>& mass = [](double) { return 1.0; }) {
     const int elements = static_cast<int>(borders.size()) - 1, size = 2 * (elements + 1);
     const double epsilon = inharmonicity / (std::numbers::pi * std::numbers::pi); // EI/(TL²)
     Eigen::MatrixXd k = Eigen::MatrixXd::Zero(size, size), m = k;
@@ -32,7 +40,7 @@ inline std::vector<double> beamRatios(double inharmonicity, string::Ends ends, i
         k.block<4, 4>(2 * e, 2 * e) += epsilon / (h2 * h) * bending + tension / (30.0 * h);
         m.block<4, 4>(2 * e, 2 * e) += rho * h / 420.0 * inertia;
     }
-    std::vector<int> free;
+    BeamSystem system{k, m, {}};
     for (int i = 0; i < size; ++i) {
         const bool nut = i < 2, bridge = i >= size - 2;
         const string::End end = nut ? ends.nut : ends.bridge;
@@ -40,16 +48,20 @@ inline std::vector<double> beamRatios(double inharmonicity, string::Ends ends, i
         const bool held = (nut || bridge) && ((displacement && end != string::End::free) ||
                                               (!displacement && end == string::End::clamped));
         if (!held)
-            free.push_back(i);
+            system.free.push_back(i);
     }
-    const int n = static_cast<int>(free.size());
-    Eigen::MatrixXd kf(n, n), mf(n, n);
-    for (int i = 0; i < n; ++i)
-        for (int j = 0; j < n; ++j) {
-            kf(i, j) = k(free[static_cast<std::size_t>(i)], free[static_cast<std::size_t>(j)]);
-            mf(i, j) = m(free[static_cast<std::size_t>(i)], free[static_cast<std::size_t>(j)]);
-        }
-    const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(kf, mf, Eigen::EigenvaluesOnly);
+    return system;
+}
+
+/// f_1…f_count over F0 = √(T/μ)/2L, from the generalised eigenvalues. `mass` is the linear density at x in 0…1 over that
+/// of F0, constant within an element: put element borders on its steps. The frequency of a beam comes out too high by
+/// about (kh)⁴/1440 of itself, k the wave number and h the element.
+inline std::vector<double> beamRatios(double inharmonicity, string::Ends ends, int count,
+                                      const std::vector<double>& borders,
+                                      const std::function<double(double)>& mass = [](double) { return 1.0; }) {
+    const BeamSystem system = beamSystem(inharmonicity, ends, borders, mass);
+    const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(
+        system.freePart(system.k), system.freePart(system.m), Eigen::EigenvaluesOnly);
     std::vector<double> ratios;
     // Both ends free: the string may be elsewhere as a whole.
     const int first = ends.nut == string::End::free && ends.bridge == string::End::free ? 1 : 0;

@@ -74,7 +74,7 @@ double worstGrowth(std::mt19937& random, int samples, long& looks) {
     Engine engine(design);
     std::vector<double> out(4096);
     double worst = -1.0, most = 0.0;
-    int quietUntil = 0; // plucks send for two round trips
+    int quietUntil = 0;
     for (int done = 0; done < samples;) {
         if (done >= quietUntil) {
             const int string = static_cast<int>(random() % static_cast<unsigned>(strings));
@@ -90,10 +90,12 @@ double worstGrowth(std::mt19937& random, int samples, long& looks) {
                 break;
             default:
                 engine.pluck(string, {5.0 * unit(random), unit(random), 0.005 * unit(random), 6.3 * unit(random)});
-                quietUntil = done + 2 * 1300 + 200; // the slowest loop here is 40 Hz
+                // A pluck sends for four periods, and what the side's filters then hold dies away.
+                const auto& open = design->strings[static_cast<std::size_t>(string)].stops.front();
+                quietUntil = done + static_cast<int>(4.0 * 48000.0 / open.loop.firstPartialHz) + 3000;
             }
         }
-        const bool listens = done >= quietUntil - 200;
+        const bool listens = done >= quietUntil;
         double before = engine.energy();
         const int steps = 24, step = 1 + static_cast<int>(random() % 170);
         for (int i = 0; i < steps && done < samples; ++i) {

@@ -22,8 +22,9 @@ namespace {
 std::vector<double> modeShape(const string::Ends& ends, int roundTrip, double cycles, int samples, int places) {
     Engine engine(support::idealInstrument({{roundTrip, 0.5, ends}}));
     engine.pluck(0, {1.0, 0.2371, 0.0, std::numbers::pi / 2.0});
-    std::vector<double> ignored(static_cast<std::size_t>(4 * roundTrip));
-    engine.process(ignored.data(), nullptr, 4 * roundTrip); // the pluck is all under way
+    // The pluck fades within four periods, two round trips each where one end is free.
+    std::vector<double> ignored(static_cast<std::size_t>(10 * roundTrip));
+    engine.process(ignored.data(), nullptr, 10 * roundTrip);
     std::vector<std::complex<double>> sums(static_cast<std::size_t>(places + 1));
     for (int t = 0; t < samples; ++t) {
         double out = 0.0;
