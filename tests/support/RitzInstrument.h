@@ -20,13 +20,17 @@ struct RitzString {
     double position = 0.5;          ///< on the bridge
 };
 
-/// Complex frequencies s with Im s > 0, by rising frequency: eigenvalues of the quadratic problem M·q̈ + C·q̇ + K·q = 0
-/// in the coordinates: Σ aₙ sin(nπx/L) of each string and direction, riding on the straight line from the nut to its end
-/// y at the bridge (Rayleigh and Ritz; the line takes up the slow part of the series, what is left falls as 1/N³); the
-/// board's modes; and, at each point, what the remainder lets it yield: y = Σ φ·u + x.
+struct RitzMatrices {
+    Eigen::MatrixXd m, c, k;
+    std::vector<Eigen::Index> firstTerm; ///< of each string, into the board: its terms follow each other
+};
+
+/// M·q̈ + C·q̇ + K·q = 0 in the coordinates: the board's modes; what the remainder lets each point yield; and then Σ aₙ sin(nπx/L) of each string and direction, riding on the straight line from the nut to its end
+/// y at the bridge, y = Σ φ·u + x (Rayleigh and Ritz; the line takes up the slow part of the series, what is left falls as
+/// 1/N³).
 /// Kinetic energy of a string: μ/2·∫(ẏx/L + Σȧₙ sin)² = μL/2·(ẏ²/3 + Σȧₙ²/2 + 2ẏΣȧₙ(−1)ⁿ⁺¹/nπ); potential: T/2·(y²/L +
 /// Σaₙ²(nπ)²/2L) + EI/2·Σaₙ²(nπ/L)⁴L/2. Derived here from the energies; textbook mechanics.
-inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, const std::vector<RitzString>& strings) {
+inline RitzMatrices ritzMatrices(const board::Bridge& bridge, const std::vector<RitzString>& strings) {
     constexpr double pi = std::numbers::pi;
     bool movesAcross = false;
     for (const board::Mode& mode : bridge.modes)
@@ -49,6 +53,7 @@ inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, 
         m(modes + p, modes + p) = 1e-7; // kg: next to nothing, where no string lends a point its mass
     }
     Eigen::Index next = modes + points;
+    std::vector<Eigen::Index> firstTerm;
     for (const RitzString& string : strings) {
         const board::Sharing place = board::sharing(string.position, points);
         const double l = string.length, mu = string.linearDensity;
@@ -66,6 +71,8 @@ inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, 
             }
             m += mu * l / 3.0 * end * end.transpose();
             k += string.tension / l * end * end.transpose();
+            if (direction == 1)
+                firstTerm.push_back(next);
             for (std::size_t i = 0; i < string.decayRates.size(); ++i, ++next) {
                 const double n = static_cast<double>(i) + 1.0, wave = n * pi / l;
                 m(next, next) = 0.5 * mu * l;
@@ -77,10 +84,21 @@ inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, 
             }
         }
     }
-    const Eigen::LLT<Eigen::MatrixXd> mass(m);
+    return {std::move(m), std::move(c), std::move(k), std::move(firstTerm)};
+}
+
+/// d/dt (q, q̇) = first·(q, q̇).
+inline Eigen::MatrixXd firstOrder(const RitzMatrices& of) {
+    const Eigen::Index size = of.m.rows();
+    const Eigen::LLT<Eigen::MatrixXd> mass(of.m);
     Eigen::MatrixXd first(2 * size, 2 * size);
-    first << Eigen::MatrixXd::Zero(size, size), Eigen::MatrixXd::Identity(size, size), -mass.solve(k), -mass.solve(c);
-    const Eigen::VectorXcd values = first.eigenvalues();
+    first << Eigen::MatrixXd::Zero(size, size), Eigen::MatrixXd::Identity(size, size), -mass.solve(of.k), -mass.solve(of.c);
+    return first;
+}
+
+/// Complex frequencies s with Im s > 0, by rising frequency.
+inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, const std::vector<RitzString>& strings) {
+    const Eigen::VectorXcd values = firstOrder(ritzMatrices(bridge, strings)).eigenvalues();
     std::vector<std::complex<double>> poles;
     for (const auto& value : values)
         if (value.imag() > 1e-6)

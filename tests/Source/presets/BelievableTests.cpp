@@ -7,6 +7,7 @@
 #include <cmath>
 #include <iostream>
 #include <map>
+#include <numbers>
 #include <set>
 
 using namespace hitchpin;
@@ -261,4 +262,35 @@ TEST_CASE("drawing, bridge and stock agree with the strings", "[presets]") {
             CHECK(stock[material].contains(diameter));
         }
     std::cout << name << ": drawn lengths true within " << worst << " mm\n";
+}
+
+// Real mobilities at the bridge: guitars and violins 1e-3…1e-1 s/kg; piano bridges 150…1e4 kg/s, about 1e3 (from memory).
+TEST_CASE("preset soundboards are believable", "[presets]") {
+    const auto name = GENERATE(from_range(all));
+    const auto p = preset(name);
+    for (const auto& bridge : p.described.instrument.bridges) {
+        if (bridge.kind != board::BridgeKind::soundboard)
+            continue;
+        INFO(name << " " << bridge.name);
+        const auto low = std::count_if(bridge.modes.begin(), bridge.modes.end(), [](const auto& m) { return m.frequency < 600.0; });
+        CHECK(low >= 5);
+        CHECK(low <= 15);
+        CHECK(std::ssize(bridge.modes) > low); // and more above
+        const bool large = name == std::string("small-piano");
+        const double least = large ? 1e-4 : 1e-3, most = large ? 1.0 / 150.0 : 1e-1;
+        const board::MobilityAt mobility(bridge, 0.5);
+        double lowest = 1e9, highest = 0.0, sum = 0.0;
+        int count = 0;
+        for (double hz = 80.0; hz < 5000.0; hz *= 1.002, ++count) {
+            const double y = std::abs(mobility({0.0, 2.0 * std::numbers::pi * hz}).into);
+            lowest = std::min(lowest, y);
+            highest = std::max(highest, y);
+            sum += std::log(y);
+        }
+        std::cout << name << " " << bridge.name << ": " << bridge.modes.size() << " modes, " << low
+                  << " below 600 Hz; mobility " << lowest << " to " << highest << " s/kg, geometric mean "
+                  << std::exp(sum / count) << "\n";
+        CHECK(lowest >= least);
+        CHECK(highest <= most);
+    }
 }

@@ -1,4 +1,4 @@
-// Energy on the strings grows by plucks alone.
+// Energy on strings and boards grows by plucks alone.
 #include "dsp/engine/Engine.h"
 #include "tests/support/PlainInstruments.h"
 
@@ -49,18 +49,34 @@ const std::vector<design::StringDesign>& pool() {
     return strings;
 }
 
+/// Up to a dozen modes anywhere, at any angle, over up to four points.
+board::Bridge randomBoard(std::mt19937& random) {
+    std::uniform_real_distribution<double> unit(0.0, 1.0);
+    board::Bridge bridge{"", board::BridgeKind::soundboard, 1 + static_cast<int>(random() % 4),
+                         std::exp2(6.0 * unit(random) + 3.0), {}};
+    for (std::size_t m = random() % 13; m > 0; --m) {
+        board::Mode mode{60.0 * std::exp2(6.0 * unit(random)), 0.4 + 60.0 * unit(random), 0.02 * std::exp2(6.0 * unit(random)),
+                         6.3 * unit(random), {}, 0.0};
+        for (int p = 0; p < bridge.points; ++p)
+            mode.shape.push_back(2.0 * unit(random) - 1.0);
+        bridge.modes.push_back(std::move(mode));
+    }
+    return bridge;
+}
+
 std::shared_ptr<const design::InstrumentDesign> randomInstrument(std::mt19937& random) {
     std::uniform_real_distribution<double> unit(0.0, 1.0);
     auto design = std::make_shared<design::InstrumentDesign>();
     design->sampleRate = 48000.0;
     design->bridges = {{board::BridgeKind::rigid, 0.0},
                        {board::BridgeKind::resistance, std::exp2(12.0 * unit(random) - 2.0)},
-                       {board::BridgeKind::soundboard, std::exp2(6.0 * unit(random) + 3.0)}};
+                       design::bridgeDesign(randomBoard(random), design->sampleRate)};
     const std::size_t count = 1 + random() % 12;
     for (std::size_t i = 0; i < count; ++i) {
         design->strings.push_back(pool()[random() % pool().size()]);
         design->strings.back().course = static_cast<int>(i);
         design->strings.back().bridge = static_cast<int>(random() % 3);
+        design->strings.back().bridgePosition = unit(random);
     }
     return design;
 }
