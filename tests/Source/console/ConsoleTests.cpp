@@ -6,6 +6,7 @@
 
 #include <cmath>
 #include <csignal>
+#include <iostream>
 #include <cstdio>
 #include <sys/stat.h>
 #include <sys/wait.h>
@@ -321,4 +322,18 @@ TEST_CASE("An interrupt leaves no file", "[console]") {
     REQUIRE(WIFEXITED(status));
     CHECK(WEXITSTATUS(status) == 1);
     CHECK(shop.files() == 1);
+}
+
+// The whole-instrument check: see Source/console/AllPartials.cpp for what it allows. Turned red by whatever makes the
+// engine's junction, loops or modes differ from their equation.
+TEST_CASE("Every coupled partial of the lap harp sounds where the bridge equation says", "[console]") {
+    const Workshop shop;
+    const auto checked = shop.call("partials " HITCHPIN_PRESETS "/lap-harp.json --all");
+    INFO(checked.err << checked.out.getLastCharacters(600));
+    CHECK(checked.exit == 0);
+    CHECK(checked.out.contains(" 0 not found."));
+    CHECK(checked.out.contains("board 197 Hz"));
+    CHECK_FALSE(checked.out.contains("OFF"));
+    CHECK(checked.err.isEmpty());
+    std::cout << checked.out.fromLastOccurrenceOf("\n\n", false, false);
 }
