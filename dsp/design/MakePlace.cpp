@@ -78,7 +78,9 @@ struct Task {
         const auto add = [&](LoopTargets& to, double weight) {
             target.weight = 1000.0 * weight * target.p.imag() * target.groupDelay / centsPerNeper;
             to.phase.push_back(target);
+            // A node is one above 6 kHz too, where decays count less.
             target.weight = 1000.0 * weight * target.loss * percentPerCent / 100.0;
+            target.weight *= target.weight / lossWeight(target);
             to.loss.push_back(target);
         };
         const double counts = n <= trueUpTo ? 1.0 : weightBeyond;

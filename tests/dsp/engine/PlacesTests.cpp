@@ -135,8 +135,8 @@ Heard hear(const yardstick::YardstickString& string, double pluckRatio, double l
 
 } // namespace
 
-// Turned red by: 1 + S at a rigid end, the level left out, the step's fade over three and a half periods, the waiting
-// path not waiting, a Thiran section left out of the side.
+// Turned red by: 1 + S at a rigid end, the level left out, what should wait for S not waiting, Thiran's section left out
+// of a side, a wave that does not turn over at the nut on its way back to a listening point.
 TEST_CASE("What sounds has the levels and the missing partials of its places", "[engine]") {
     struct Case {
         const char* string;
