@@ -78,7 +78,9 @@ struct Task {
         const auto add = [&](LoopTargets& to, double weight) {
             target.weight = 1000.0 * weight * target.p.imag() * target.groupDelay / centsPerNeper;
             to.phase.push_back(target);
+            // A node is one above 6 kHz too, where decays count less.
             target.weight = 1000.0 * weight * target.loss * percentPerCent / 100.0;
+            target.weight *= target.weight / lossWeight(target);
             to.loss.push_back(target);
         };
         const double counts = n <= trueUpTo ? 1.0 : weightBeyond;
@@ -118,7 +120,7 @@ PlaceAccuracy measure(const Task& task, const LoopModel& model) {
 struct Judged {
     LoopModel model;
     double lead = 0.0;
-    PlaceAccuracy accuracy;
+    PlaceAccuracy accuracy{std::numeric_limits<double>::infinity(), 0.0};
     /// Over 1: not good enough.
     double badness = std::numeric_limits<double>::infinity();
 };
@@ -168,16 +170,22 @@ Judged fitFrom(Task& task, LoopModel model, int steps) {
     return best;
 }
 
+LoopModel modelFrom(double gain, double thiran, const std::vector<LossShelf>& shelves,
+                    const std::vector<AllpassSection>& sections) {
+    LoopDesign filters;
+    filters.gain = gain;
+    filters.thiran = thiran;
+    filters.shelves = shelves;
+    filters.sections = sections;
+    return modelOf(filters);
+}
+
 /// As it stands or after a few steps; its badness tells whether that did.
 Judged fitFromNeighbour(Task& task, const PlaceDesign& neighbour) {
     constexpr int steps = 8;
     const double ratio = task.loop.firstPartialHz / neighbour.firstPartialHz;
-    LoopDesign filters;
-    filters.thiran = neighbour.thiran;
-    filters.gain = neighbour.gain;
-    filters.shelves = neighbour.shelves;
-    filters.sections = neighbour.sections;
-    LoopModel model = scaled(modelOf(filters), ratio);
+    LoopModel model =
+        scaled(modelFrom(neighbour.gain, neighbour.thiran, neighbour.shelves, neighbour.sections), ratio);
     task.setLead(2.0 * static_cast<double>(model.sections.size()) + 2.0);
     const double delay = (neighbour.delay + thiranDelay(neighbour.thiran)) / ratio + task.targets.lead;
     model.straightDelay = std::round(delay - model.thiranDelay);
@@ -201,7 +209,7 @@ Judged fitSide(Task& task) {
     const int planned =
         std::min(most, static_cast<int>(std::ceil(task.share * sectionsNeeded(task.partials, covered) + margin)));
     Judged best;
-    for (int sections = planned; sections <= std::min(most, planned + mostExtra) && best.badness > 1.0; ++sections) {
+    const auto tryWith = [&](int sections) {
         task.setLead(2.0 * sections + 2.0);
         for (const double flatness : {0.5, 0.7}) {
             LoopModel model = lossy;
@@ -214,7 +222,11 @@ Judged fitSide(Task& task) {
             if (best.badness <= 1.0 || sections == 0)
                 break;
         }
-    }
+    };
+    for (int sections = planned; sections <= std::min(most, planned + mostExtra) && best.badness > 1.0; ++sections)
+        tryWith(sections);
+    for (int sections = planned - 1; sections >= 0 && std::isinf(best.badness); --sections)
+        tryWith(sections);
     return best;
 }
 
@@ -242,12 +254,8 @@ void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampl
         });
     };
     LoopModel model;
-    if (neighbour != nullptr && !neighbour->level.empty()) {
-        LoopDesign filters;
-        filters.gain = neighbour->levelGain;
-        filters.shelves = neighbour->level;
-        model = modelOf(filters);
-    }
+    if (neighbour != nullptr)
+        model = modelFrom(neighbour->levelGain, 1.0, neighbour->level, {});
     if (model.shelves.empty() || !fits(model))
         fitLoss(model, targets, goodLevelPercent);
     const LoopDesign fitted = designOf(model);

@@ -10,14 +10,17 @@ namespace hitchpin::engine {
 /// One release of a string that a plectrum or a finger held aside.
 struct Pluck {
     double force = 1.0;       ///< N, held just before the release
-    double pointRatio = 0.2;  ///< of the speaking length, from the bridge, 0…1
+    double pointRatio = 0.2;  ///< of the speaking length, from the bridge, 0…1. Partials with a node there stay away
+                              ///< where it is the ratio designed for; elsewhere a stiff string follows less closely
     double width = 0.0;       ///< m of string that the plectrum or finger covers
     double angle = 1.5707963267948966; ///< rad from across towards into
 };
 
 /// Where the sound is taken. Of a rigid or resistive bridge: the forces with which the strings pull at it. Of a
 /// soundboard: its motion, modes and remainder, as the force that would move its mean mobility alike. At a free end
-/// there is no force: what is heard of such a string is Z0 times the velocity of that end.
+/// there is no force: what is heard of such a string is Z0 times the velocity of that end. A string designed to be
+/// listened to at a place of its own gives Z0 times its velocity there, in newtons too, its partials ∝ sin(nπγ) of those
+/// at the bridge.
 struct Listening {
     double angle = 1.5707963267948966; ///< rad from across towards into: which direction of force or motion is heard
     /// 0: both sides alike, each the plain sum; 1: the ends of a bridge lie fully left and right. In between with

@@ -62,23 +62,24 @@ double edge(double t, double width) noexcept {
     return (edgeIntegral(t + 0.5 * width) - edgeIntegral(t - 0.5 * width)) / width;
 }
 
-/// k = 1 − 4/3·cos(2πx) + 1/3·cos(4πx) on 0…1, its mean ½. That of k' is −1, so ∫x·(k + ½k') = 0 and with it the sum of
-/// what is sent.
-double letGo(double t, double width, double length) noexcept {
-    const double x = t / length;
-    if (x >= 1.0)
+/// k is the cubic B-spline over four periods, u = t/period: by truncated powers (1/6)·Σ(−1)^j·C(4,j)·(u−j)₊³, of which
+/// symmetry leaves two. Its mean is u = 2 and that of k' is −1, so that ∫u·(k + 2k') = 0 and with it the sum of what is
+/// sent.
+double letGo(double t, double width, double period) noexcept {
+    const double u = t / period;
+    if (u >= periodsToFade)
         return 0.0;
     const double step = edge(t, width);
-    if (x <= 0.0)
+    if (u <= 0.0)
         return step;
-    const double angle = 2.0 * std::numbers::pi * x, cosine = std::cos(angle), sine = std::sin(angle);
-    const double kernel = 1.0 - 4.0 / 3.0 * cosine + (2.0 * cosine * cosine - 1.0) / 3.0;
-    const double integral = x - sine * (4.0 - cosine) / (6.0 * std::numbers::pi);
-    return step - integral - 0.5 * kernel;
+    const double v = std::min(u, periodsToFade - u), w = std::max(0.0, v - 1.0);
+    const double v3 = v * v * v, w3 = w * w * w;
+    const double kernel = (v3 - 4.0 * w3) / 6.0, upTo = (v3 * v - 4.0 * w3 * w) / 24.0;
+    return step - (u > 0.5 * periodsToFade ? 1.0 - upTo : upTo) - 2.0 * kernel;
 }
 
 Release::Release(std::int64_t start, const From& from, const Place& place) noexcept
-    : length_(periodsToFade * from.period) {
+    : period_(from.period) {
     const NearerEnd end(from.ratio);
     const double turned = (end.isBridge ? from.freeBridge : from.freeNut) ? 1.0 : -1.0;
     directStep_ = end.isBridge ? -turned * from.step : -from.step;
@@ -90,15 +91,15 @@ Release::Release(std::int64_t start, const From& from, const Place& place) noexc
     const double first = static_cast<double>(start) + edgeReach + 0.5 * width_;
     directAt_ = first + std::max(0.0, -delay);
     returnedAt_ = first + std::max(0.0, delay);
-    end_ = static_cast<std::int64_t>(std::ceil(std::max(directAt_, returnedAt_) + length_));
+    end_ = static_cast<std::int64_t>(std::ceil(std::max(directAt_, returnedAt_) + periodsToFade * period_));
 }
 
 double Release::direct(std::int64_t time) const noexcept {
-    return directStep_ * letGo(static_cast<double>(time) - directAt_, width_, length_);
+    return directStep_ * letGo(static_cast<double>(time) - directAt_, width_, period_);
 }
 
 double Release::returned(std::int64_t time) const noexcept {
-    return returnedStep_ * letGo(static_cast<double>(time) - returnedAt_, width_, length_);
+    return returnedStep_ * letGo(static_cast<double>(time) - returnedAt_, width_, period_);
 }
 
 void Releases::makeRoomFor(const Place& place) {

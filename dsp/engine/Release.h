@@ -15,10 +15,11 @@ double edge(double t, double width) noexcept;
 inline constexpr double edgeReach = 8.0;
 
 /// What one point sends when it lets go, 1 before any shaping: a step up at t = 0 (an edge of that width) that fades
-/// again over `length`, below nought for a while, so that its sum is nought: a string whose ends cannot hold it is not
-/// sent away. The fade is the integral of a smooth kernel k + ½k', k ∝ (1 − cos)², whose spectrum has its zeros at
-/// the harmonics of 1/length from the third up: over four periods of the first partial it excites none of them.
-double letGo(double t, double width, double length) noexcept;
+/// again over four periods, below nought for a while, so that its sum is nought: a string whose ends cannot hold it is
+/// not sent away. The fade is the integral of k + 2k', k four rectangles of a period each, one folded with the other:
+/// its spectrum sinc⁴ is nought at every harmonic and so flat there that neither damping nor stiffness lets it reach a
+/// partial. Times in samples.
+double letGo(double t, double width, double period) noexcept;
 inline constexpr double periodsToFade = 4.0;
 
 /// One release. A force F held a string aside at ratio β from the bridge; letting go is a step of force −F, which
@@ -30,7 +31,8 @@ inline constexpr double periodsToFade = 4.0;
 /// |1 − S| = 2·sin(nπβ), and one with a node there not at all. The string's stiffness enters by S and by the level
 /// of dsp/string/Places.h, both filters that the design brings; all releases of a rail share them.
 /// A point other than the one designed uses the same filters with more or less delay: exact without stiffness, close
-/// to it otherwise. A width spreads the step over w/c.
+/// to it otherwise. A width w spreads the step over w/c, which takes sin(x)/x, x = nπw/2L; with stiffness x comes out
+/// √(1+Bn²) larger, 0.02 dB for a finger of 10 mm on the twentieth partial of a guitar's string.
 class Release {
 public:
     struct From {
@@ -59,7 +61,7 @@ private:
     double directStep_ = 0.0; ///< m/s
     double returnedStep_ = 0.0;
     double width_ = 0.0;
-    double length_ = 1.0;
+    double period_ = 1.0; ///< samples, of the first partial
 };
 
 /// The releases still going on in one rail, and the filters of the place. A ninth at once ends the oldest early: what

@@ -2,6 +2,7 @@
 // and as ratios to one fixed piece of arithmetic in the same run, which compares better from machine to
 // machine.
 #include "dsp/design/MakeLoop.h"
+#include "dsp/design/MakePlace.h"
 #include "tests/support/YardstickStrings.h"
 
 #include <algorithm>
@@ -61,6 +62,27 @@ int main() {
                         quality == design::Quality::live ? "live" : "reference", make, make / unit, retune,
                         retune / unit, loop->sections.size(), loop->shelves.size(), loop->accuracy.coverageHz,
                         loop->accuracy.worstCents, 100.0 * loop->accuracy.worstT60Error);
+        }
+    }
+
+    std::printf("\n%-20s %-10s %8s %8s %8s %8s  %2s %8s %9s\n", "plucked at 0.2", "quality", "make ms", "units",
+                "again", "units", "K", "level dB", "missing dB");
+    for (const auto quality : {design::Quality::live, design::Quality::reference}) {
+        for (const auto& string : yardstick::strings()) {
+            const design::LoopSettings settings{48000.0, quality};
+            const string::Partials partials = string.partials(), other = string.partials(0.7);
+            const auto loop = design::makeLoop(partials, settings);
+            if (!loop)
+                continue;
+            const auto retuned = design::retuneLoop(*loop, other, settings);
+            const auto place = design::makePlace(partials, *loop, design::PlaceUse::plucked, 0.2);
+            const double make = bestOf(
+                5, [&] { kept = design::makePlace(partials, *loop, design::PlaceUse::plucked, 0.2).gain; });
+            const double again = bestOf(
+                5, [&] { kept = design::makePlace(other, *retuned, design::PlaceUse::plucked, 0.2, &place).gain; });
+            std::printf("%-20s %-10s %8.2f %8.1f %8.2f %8.2f  %2zu %8.3f %9.1f\n", string.name,
+                        quality == design::Quality::live ? "live" : "reference", make, make / unit, again, again / unit,
+                        place.sections.size(), place.accuracy.worstLevelDb, place.accuracy.worstNullDb);
         }
     }
 }

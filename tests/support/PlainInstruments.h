@@ -71,6 +71,7 @@ struct RealString {
     bool damper = false;
     string::Ends ends{};
     int bridge = 0;
+    double listeningRatio = 0.0;
 };
 
 inline design::InstrumentDescription realDescription(const std::vector<RealString>& courses,
@@ -90,6 +91,7 @@ inline design::InstrumentDescription realDescription(const std::vector<RealStrin
         course.hasDamper = from.damper;
         course.frets = from.frets;
         course.bridge = from.bridge;
+        course.listeningRatio = from.listeningRatio;
         for (int i = 0; i < from.strings; ++i) {
             auto strung = string::strungToPitch(description, from.hertz * std::exp2(i * from.detuneCents / 1200.0));
             if (!strung)

@@ -21,10 +21,11 @@ constexpr int total = 48000;
 std::shared_ptr<const design::InstrumentDesign> coupled() {
     static const auto design = support::realInstrument(
         {RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 3, 0.7, 0, true},
-         RealString{"music wire", 0.648, 0.33e-3, 329.6, 64, 1, 0.0, 7, false},
-         RealString{"nylon", 0.65, 0.9e-3, 196.0, 55},
-         RealString{"music wire", 0.052, 0.79e-3, 4186.0, 108, 1, 0.0, 0, true}},
-        {"bridge", board::BridgeKind::resistance, 1, 300.0, {}});
+         RealString{"music wire", 0.648, 0.33e-3, 329.6, 64, 1, 0.0, 7, false, {}, 0, 0.3},
+         RealString{"nylon", 0.65, 0.9e-3, 196.0, 55, 1, 0.0, 0, false, {}, 0, 0.9},
+         RealString{"music wire", 0.052, 0.79e-3, 4186.0, 108, 1, 0.0, 0, true, {}, 0, 0.05}},
+        {"board", board::BridgeKind::soundboard, 2, 300.0,
+         {{197.0, 30.0, 0.3, 1.2, {1.0, 0.7}, -0.3}, {410.0, 35.0, 0.2, 1.5, {0.8, -1.0}, 0.4}}});
     return design;
 }
 

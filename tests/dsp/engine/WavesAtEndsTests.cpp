@@ -77,7 +77,8 @@ TEST_CASE("A pulse arrives at the bridge as it was sent", "[engine]") {
     CHECK(sum(first) == Approx(stepVelocity * pulseSamples).epsilon(stepFades));
     // Around the second the slope by which the step of the first fades adds at most 1.4/(4·400) a sample and sample.
     const int reach = 12;
-    const std::vector<double> second(in.begin() + roundTrip / 2 - reach, in.begin() + roundTrip / 2 + 16 + pulseSamples + reach);
+    const auto middle = in.begin() + roundTrip / 2;
+    const std::vector<double> second(middle - reach, middle + 16 + pulseSamples + reach);
     const double fading = 1.4 / (4.0 * roundTrip) * static_cast<double>(second.size());
     CHECK(sum(second) == Approx(-stepVelocity * pulseSamples).epsilon(fading));
 }

@@ -65,8 +65,8 @@ TEST_CASE("A point force let go rings as the finite elements say, whatever the e
     double worstForce = 0.0, worstVelocity = 0.0, worstSides = 0.0;
     for (const End nut : {End::hinged, End::clamped, End::free})
         for (const End bridge : {End::hinged, End::clamped, End::free})
-            for (const double inharmonicity : {1e-4, 2e-3, 2e-2})
-                for (const double pluck : {0.21, 0.37}) {
+            for (const double inharmonicity : {1e-4, 2e-2})
+                for (const double pluck : {0.21}) {
                     const double listen = 0.62;
                     const string::Ends ends{nut, bridge};
                     const auto elementwise = released(inharmonicity, ends, pluck, listen);
