@@ -2,7 +2,8 @@
 
 #include "dsp/base/LeastSquares.h"
 
-#include <Eigen/Dense>
+#include <Eigen/Eigenvalues>
+#include <Eigen/QR>
 
 #include <algorithm>
 #include <cmath>
