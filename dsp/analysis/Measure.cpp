@@ -3,7 +3,8 @@
 #include "dsp/analysis/Band.h"
 #include "dsp/base/LeastSquares.h"
 
-#include <Eigen/Dense>
+#include <Eigen/Eigenvalues>
+#include <Eigen/QR>
 
 #include <algorithm>
 #include <cmath>

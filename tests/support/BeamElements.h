@@ -3,8 +3,10 @@
 
 #include "dsp/string/Partials.h"
 
-#include <Eigen/Dense>
+#include <Eigen/Core>
 
+#include <algorithm>
+#include <array>
 #include <cmath>
 #include <functional>
 #include <numbers>
@@ -53,20 +55,69 @@ inline BeamSystem beamSystem(double inharmonicity, string::Ends ends, const std:
     return system;
 }
 
-/// f_1…f_count over F0 = √(T/μ)/2L, from the generalised eigenvalues. `mass` is the linear density at x in 0…1 over that
-/// of F0, constant within an element: put element borders on its steps. The frequency of a beam comes out too high by
-/// about (kh)⁴/1440 of itself, k the wave number and h the element.
+/// Symmetric, with no entry further than three from the diagonal: at(i, d) is entry (i, i + d).
+class Banded {
+public:
+    explicit Banded(int size) : rows(static_cast<std::size_t>(size)) {}
+    int size() const { return static_cast<int>(rows.size()); }
+    double& at(int i, int d) { return rows[static_cast<std::size_t>(i)][static_cast<std::size_t>(d)]; }
+    double at(int i, int d) const { return rows[static_cast<std::size_t>(i)][static_cast<std::size_t>(d)]; }
+
+private:
+    std::vector<std::array<double, 4>> rows;
+};
+
+/// How many eigenvalues of K·x = λ·M·x lie below λ: as many as K − λM has negative pivots (Sylvester's law of inertia;
+/// Parlett, The Symmetric Eigenvalue Problem).
+inline int eigenvaluesBelow(double lambda, const Banded& k, const Banded& m) {
+    Banded left(k.size());
+    int negative = 0;
+    for (int i = 0; i < k.size(); ++i)
+        for (int d = 0; d < 4; ++d)
+            left.at(i, d) = k.at(i, d) - lambda * m.at(i, d);
+    for (int i = 0; i < k.size(); ++i) {
+        const double pivot = left.at(i, 0);
+        negative += pivot < 0.0;
+        for (int a = 1; a < std::min(4, k.size() - i); ++a)
+            for (int b = a; b < 4; ++b)
+                left.at(i + a, b - a) -= left.at(i, a) / pivot * left.at(i, b);
+    }
+    return negative;
+}
+
+/// f_1…f_count over F0 = √(T/μ)/2L, from generalised eigenvalues. `mass` is the linear density at
+/// x in 0…1 over that of F0, constant within an element: put element borders on its steps. The frequency of a beam comes
+/// out too high by about (kh)⁴/1440 of itself, k the wave number and h the element.
 inline std::vector<double> beamRatios(double inharmonicity, string::Ends ends, int count,
                                       const std::vector<double>& borders,
                                       const std::function<double(double)>& mass = [](double) { return 1.0; }) {
     const BeamSystem system = beamSystem(inharmonicity, ends, borders, mass);
-    const Eigen::GeneralizedSelfAdjointEigenSolver<Eigen::MatrixXd> solver(
-        system.freePart(system.k), system.freePart(system.m), Eigen::EigenvaluesOnly);
+    const int size = static_cast<int>(system.free.size());
+    Banded k(size), m(size);
+    for (int i = 0; i < size; ++i)
+        for (int d = 0; d < std::min(4, size - i); ++d) {
+            const int row = system.free[static_cast<std::size_t>(i)], column = system.free[static_cast<std::size_t>(i + d)];
+            k.at(i, d) = system.k(row, column);
+            m.at(i, d) = system.m(row, column);
+        }
+    // By halving, until nothing lies between.
+    const auto below = [&](double ratio) {
+        return eigenvaluesBelow(ratio * ratio * std::numbers::pi * std::numbers::pi, k, m);
+    };
     std::vector<double> ratios;
     // Both ends free: the string may be elsewhere as a whole.
     const int first = ends.nut == string::End::free && ends.bridge == string::End::free ? 1 : 0;
-    for (int i = first; static_cast<int>(ratios.size()) < count; ++i)
-        ratios.push_back(std::sqrt(std::abs(solver.eigenvalues()[i])) / std::numbers::pi);
+    double low = 1e-3; // above that one
+    for (int i = first; i < first + count; ++i) {
+        double high = low + 1.0;
+        while (below(high) <= i)
+            high += 1.0;
+        for (int halving = 0; halving < 52; ++halving) {
+            const double middle = 0.5 * (low + high);
+            (below(middle) <= i ? low : high) = middle;
+        }
+        ratios.push_back(low = high);
+    }
     return ratios;
 }
 

@@ -2,6 +2,8 @@
 #include "dsp/string/Places.h"
 #include "tests/support/BeamElements.h"
 
+#include <Eigen/Eigenvalues>
+
 #include <catch2/catch.hpp>
 
 #include <algorithm>
