@@ -386,7 +386,7 @@ void Engine::Running::hear(const Gains& from, const Gains& to, const double* hea
     const auto add = [&](double* sum, double a, double b) {
         if (moving) {
             for (int i = 0; i < count; ++i)
-                sum[i] += (a + share(i) * (b - a)) * heard[i];
+                sum[i] += ((1.0 - share(i)) * a + share(i) * b) * heard[i]; // b itself, to the bit, once settled
         } else {
             for (int i = 0; i < count; ++i)
                 sum[i] += b * heard[i];
