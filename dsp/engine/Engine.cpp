@@ -12,7 +12,7 @@ namespace {
 
 /// All that depends on anything but the sound itself happens where the sample clock is a multiple of these, so that
 /// it cannot depend on the host's blocks.
-constexpr std::int64_t tile = longestChunk;
+constexpr std::int64_t tile = Rail::longestChunk;
 constexpr std::int64_t restCheck = 16 * tile;
 
 /// A rail with less energy rests: on a guitar string about 4e-10 N at the bridge, 214 dB under 20 N.
@@ -100,7 +100,7 @@ struct Engine::Running {
     Listening listening;
     std::int64_t listeningSettled = 0; ///< sample from which `heardTo` holds alone
 
-    /// Waves of the rails of one bridge within a chunk, longestChunk each.
+    /// Waves of the rails of one bridge within a chunk, Rail::longestChunk each.
     std::vector<double> waves;
     struct Port {
         const String* string;
@@ -132,7 +132,7 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     for (const auto& bridge : bridges)
         mostPorts = std::max(mostPorts, bridge.strings.size() * slotCount);
     ports.reserve(mostPorts);
-    waves.assign(mostPorts * longestChunk, 0.0);
+    waves.assign(mostPorts * Rail::longestChunk, 0.0);
     reset();
 }
 
@@ -274,7 +274,7 @@ void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOu
     if (ports.empty())
         return;
 
-    std::array<double, longestChunk> velocity;
+    std::array<double, Rail::longestChunk> velocity;
     for (int offset = 0; offset < count; offset += step) {
         step = std::min(step, count - offset);
         std::fill_n(velocity.begin(), step, 0.0);
@@ -284,13 +284,13 @@ void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOu
             const double weight = 2.0 * port.string->impedance / load;
             for (int i = 0; i < step; ++i)
                 velocity[static_cast<std::size_t>(i)] += weight * wave[i];
-            wave += longestChunk;
+            wave += Rail::longestChunk;
         }
         for (int i = 0; i < step; ++i)
             bridge.peakVelocity = std::max(bridge.peakVelocity, std::abs(velocity[static_cast<std::size_t>(i)]));
         wave = waves.data();
         for (const Port& port : ports) {
-            std::array<double, longestChunk> force;
+            std::array<double, Rail::longestChunk> force;
             for (int i = 0; i < step; ++i) {
                 const double in = wave[i], out = velocity[static_cast<std::size_t>(i)] - in;
                 force[static_cast<std::size_t>(i)] = port.string->impedance * (in - out);
@@ -298,7 +298,7 @@ void Engine::Running::runBridge(Bridge& bridge, double* leftOut, double* rightOu
             }
             port.rail->leave(wave, step);
             hear(*port.string, *port.rail, into, force.data(), leftOut, rightOut, offset, step);
-            wave += longestChunk;
+            wave += Rail::longestChunk;
         }
     }
 }
@@ -308,7 +308,7 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
                                double* rightOut, int count) noexcept {
     if (!rail.running())
         return;
-    std::array<double, longestChunk> wave, force;
+    std::array<double, Rail::longestChunk> wave, force;
     const double sign = string.freeBridge ? 1.0 : -1.0;
     int step = std::min(count, rail.delay());
     for (int offset = 0; offset < count; offset += step) {
@@ -327,7 +327,7 @@ void Engine::Running::runAlone(const String& string, Rail& rail, Direction direc
 /// The force at the bridge, or where the string is listened to at another place Z0 times its velocity there.
 void Engine::Running::hear(const String& string, const Rail& rail, Direction direction, const double* force,
                            double* leftOut, double* rightOut, int offset, int count) noexcept {
-    std::array<double, longestChunk> atPlace;
+    std::array<double, Rail::longestChunk> atPlace;
     if (const double* velocity = rail.heard()) {
         for (int i = 0; i < count; ++i)
             atPlace[static_cast<std::size_t>(i)] = string.impedance * velocity[i];

@@ -29,6 +29,8 @@ struct RailLoop {
 /// Constructing allocates for all loops that the rail will ever run; the rest is real-time safe.
 class Rail {
 public:
+    static constexpr int longestChunk = engine::longestChunk;
+
     explicit Rail(const std::vector<RailLoop>& loops);
 
     /// From now on this loop, at rest.
