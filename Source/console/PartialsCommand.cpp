@@ -39,6 +39,7 @@ design::InstrumentDescription alone(const design::CourseDescription& course, str
     design::CourseDescription one;
     one.name = course.name;
     one.key = course.key;
+    one.pluckRatio = pluckedAt;
     one.strings = {std::move(string)};
     instrument.courses = {std::move(one)};
     return instrument;

@@ -205,7 +205,8 @@ Judged fitSide(Task& task) {
     constexpr int steps = 30;
     const LoopModel lossy = lossySide(task);
     const int covered = std::max(1, task.loop.accuracy.coveragePartial);
-    const int most = std::max(0, (static_cast<int>(task.targets.phase.size()) - 1) / 2);
+    // Near half the rate a Thiran section alone leaves gaps between whole samples: one section is always there.
+    const int most = std::max(1, (static_cast<int>(task.targets.phase.size()) - 1) / 2);
     const int planned =
         std::min(most, static_cast<int>(std::ceil(task.share * sectionsNeeded(task.partials, covered) + margin)));
     Judged best;

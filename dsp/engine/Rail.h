@@ -29,6 +29,7 @@ struct RailLoop {
 /// Constructing allocates for all loops that the rail will ever run; the rest is real-time safe.
 class Rail {
 public:
+
     explicit Rail(const std::vector<RailLoop>& loops);
 
     /// From now on this loop, at rest.

@@ -30,9 +30,11 @@ inline constexpr double periodsToFade = 4.0;
 /// since the wave that comes later from the nut is the one that left the bridge earlier. So partial n rings by
 /// |1 − S| = 2·sin(nπβ), and one with a node there not at all. The string's stiffness enters by S and by the level
 /// of dsp/string/Places.h, both filters that the design brings; all releases of a rail share them.
-/// A point other than the one designed uses the same filters with more or less delay: exact without stiffness, close
-/// to it otherwise. A width w spreads the step over w/c, which takes sin(x)/x, x = nπw/2L; with stiffness x comes out
-/// √(1+Bn²) larger, 0.02 dB for a finger of 10 mm on the twentieth partial of a guitar's string.
+/// A point other than the one designed uses the same filters with more or less delay: exact without stiffness. On a
+/// stiff string the difference does not disperse: 0.03 of the length away, partials to the twentieth are within 0.6 dB
+/// on guitar strings, 1.3 dB on a piano's A0 and 5 dB on its A4 (measured; nodes left out).
+/// A width w spreads the step over w/c, which takes sin(x)/x, x = nπw/2L; with stiffness x comes out √(1+Bn²) larger,
+/// 0.02 dB for a finger of 10 mm on the twentieth partial of a guitar's string.
 class Release {
 public:
     struct From {
