@@ -22,7 +22,7 @@ constexpr double rate = 48000.0;
 /// The goal for a change that should be silent, against what sounds.
 constexpr double silentDb = -90.0;
 
-board::Bridge board() {
+board::Bridge wood() {
     return {"board", board::BridgeKind::soundboard, 1, 300.0, {{118.0, 30.0, 0.4, 1.3, {1.0}, 0.0}, {236.0, 32.0, 0.3, 1.5, {1.0}, 0.0}}};
 }
 
@@ -34,7 +34,7 @@ std::vector<RealString> strings(double cents = 0.0, int frets = 0) {
 }
 
 std::shared_ptr<const design::InstrumentDesign> made(const std::vector<RealString>& courses, design::Quality quality) {
-    auto design = design::makeInstrument(support::realDescription(courses, board()), {rate, quality});
+    auto design = design::makeInstrument(support::realDescription(courses, wood()), {rate, quality});
     REQUIRE(design);
     return *design;
 }
@@ -125,7 +125,7 @@ TEST_CASE("Strings that ring follow their new tension", "[engine][takeover]") {
     std::cout << "50 cents up while ringing: energy at most " << 10.0 * std::log10(most / energy) << " dB over what was there\n";
     CHECK(10.0 * std::log10(most / energy) < 0.5);
     // Where the board lets it sound, the other strings at rest.
-    const auto description = support::realDescription(strings(50.0), board());
+    const auto description = support::realDescription(strings(50.0), wood());
     const auto& string = description.courses[1].strings[0];
     const double said = board::partialOnBoard(string.partials, string.statics.impedance,
                                               design::mobilityFor(description, 1, 0), 1).frequency;
