@@ -139,7 +139,7 @@ LoopModel scaled(LoopModel model, double ratio) {
         section.c0 *= ratio * ratio;
         section.c1 *= ratio;
     }
-    for (ShelfModel& shelf : model.shelves)
+    for (LossShelf& shelf : model.shelves)
         shelf.corner *= ratio;
     const double delay = model.delay() / ratio;
     double line = std::max(1.0, std::round(delay - model.thiranDelay));

@@ -10,20 +10,12 @@
 
 namespace hitchpin::design {
 
-/// s = (1−z⁻¹)/(1+z⁻¹), w the corner tan(ω/2), γ = e^(−depth) < 1. High: (w + γs)/(w + s) loses above the
-/// corner; low: (γw + s)/(w + s) loses below it. |H| ≤ 1 by construction.
-struct ShelfModel {
-    enum class Loses { high, low } loses = Loses::high;
-    double corner = 1.0;
-    double depth = 0.1; ///< nepers
-};
-
 struct LoopModel {
     double straightDelay = 1.0; ///< samples of pure delay, also fractional while fitting
     double thiranDelay = 0.0;   ///< samples at low frequencies; 0: no Thiran section
     double loss = 0.0;          ///< nepers once round at every frequency: gain = e^(−loss)
     std::vector<AllpassSection> sections;
-    std::vector<ShelfModel> shelves;
+    std::vector<LossShelf> shelves;
 
     double delay() const noexcept { return straightDelay + thiranDelay; }
 };
@@ -51,6 +43,12 @@ std::complex<double> logLoopSlope(const LoopModel&, std::complex<double> s);
 
 /// The pole of the loop near `start`: ln L(e^p) + j2π·turns = 0, by Newton. NaN where it does not converge.
 std::complex<double> loopPole(const LoopModel&, double turns, std::complex<double> start);
+
+/// −ln|H| of one shelf on the unit circle at x² = tan²(ω/2), with its derivatives by ln corner and ln depth.
+struct ShelfLoss {
+    double loss, byCorner, byDepth;
+};
+ShelfLoss shelfLoss(const LossShelf&, double x2) noexcept;
 
 /// From formula to filters and back. The model must have a Thiran section and a whole straight delay.
 LoopDesign designOf(const LoopModel&);

@@ -11,29 +11,18 @@ namespace hitchpin::design {
 
 namespace {
 
-constexpr std::size_t mostShelves = 4;
-/// Worst error of a fit that is good as it is.
-constexpr double poorPercent = 2.0;
+#include <cstdlib>
+static const std::size_t mostShelves = getenv("MS")?atoi(getenv("MS")):4;
+
+/// Those that are tried. A low shelf of second order was never chosen.
+constexpr std::pair<LossShelf::Loses, int> kinds[] = {
+    {LossShelf::Loses::high, 1}, {LossShelf::Loses::low, 1}, {LossShelf::Loses::high, 2}};
 
 struct LossPoint {
     double x2; ///< tan²(ω/2)
     double loss;
     double weight;
 };
-
-/// −ln|H| of one shelf at x = tan(ω/2), and its derivatives by ln corner and ln depth.
-struct ShelfLoss {
-    double loss, byCorner, byDepth;
-};
-ShelfLoss shelfLoss(const ShelfModel& shelf, double x2) {
-    const double w2 = shelf.corner * shelf.corner, g2 = std::exp(-2.0 * shelf.depth);
-    if (shelf.loses == ShelfModel::Loses::high) {
-        const double upper = w2 + g2 * x2, lower = w2 + x2;
-        return {0.5 * std::log(lower / upper), w2 / lower - w2 / upper, shelf.depth * g2 * x2 / upper};
-    }
-    const double upper = g2 * w2 + x2, lower = w2 + x2;
-    return {0.5 * std::log(lower / upper), w2 / lower - g2 * w2 / upper, shelf.depth * g2 * w2 / upper};
-}
 
 double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterations) {
     const std::size_t first = firstLossConstant(model), rows = points.size();
@@ -66,6 +55,23 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
     return cost;
 }
 
+/// By how much of its loss each point is missed, by its weight.
+std::vector<double> missesOf(const LoopModel& model, const std::vector<LossPoint>& points) {
+    std::vector<double> misses;
+    for (const auto& [x2, loss, weight] : points) {
+        double sum = model.loss;
+        for (const LossShelf& shelf : model.shelves)
+            sum += shelfLoss(shelf, x2).loss;
+        misses.push_back(weight * std::abs(sum / loss - 1.0));
+    }
+    return misses;
+}
+
+double worstPercent(const LoopModel& model, const std::vector<LossPoint>& points) {
+    const std::vector<double> misses = missesOf(model, points);
+    return 100.0 * *std::max_element(misses.begin(), misses.end());
+}
+
 } // namespace
 
 double lossWeight(const LoopTarget& target) {
@@ -88,24 +94,23 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
 
     model.loss = 0.9 * least;
     model.shelves.clear();
-    const double good = goodPercent * goodPercent * static_cast<double>(points.size());
     double cost = refine(model, points, 20);
     const double lowest = std::sqrt(points.front().x2),
                  highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
-    while (cost > good && model.shelves.size() < mostShelves &&
+    while (worstPercent(model, points) > goodPercent && model.shelves.size() < mostShelves &&
            1 + 2 * (model.shelves.size() + 1) <= points.size()) {
         constexpr int corners = 8;
         LoopModel best;
         double bestCost = std::numeric_limits<double>::infinity();
         for (int i = 0; i < corners; ++i) {
-            for (const auto loses : {ShelfModel::Loses::high, ShelfModel::Loses::low}) {
+            for (const auto& [loses, order] : kinds) {
                 LoopModel candidate = model;
                 const double corner = lowest * std::pow(highest / lowest, (i + 0.5) / corners);
                 // As deep as what is to be lost at its corner.
                 const auto there =
                     std::find_if(points.begin(), points.end() - 1,
                                  [&](const LossPoint& point) { return point.x2 >= corner * corner; });
-                candidate.shelves.push_back({loses, corner, there->loss});
+                candidate.shelves.push_back({loses, order, corner, there->loss / order});
                 const double candidateCost = refine(candidate, few, 8);
                 if (candidateCost < bestCost) {
                     bestCost = candidateCost;
@@ -122,32 +127,24 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
 
     // A shelf far below the lowest partial does the same to all of them, and would only leave a slow state that
     // no damper reaches: what it takes is part of the constant.
-    std::erase_if(model.shelves, [&](const ShelfModel& shelf) {
+    std::erase_if(model.shelves, [&](const LossShelf& shelf) {
         if (shelf.corner > lowest / 16.0)
             return false;
-        model.loss += shelf.loses == ShelfModel::Loses::high ? shelf.depth : 0.0;
+        model.loss += shelf.loses == LossShelf::Loses::high ? shelf.order * shelf.depth : 0.0;
         return true;
     });
 
     // Where that leaves much, it is spread evenly: what is worst counts more, round by round.
-    for (int round = 0; round < 3; ++round) {
-        std::vector<double> miss;
-        double worst = 0.0;
-        for (std::size_t i = 0; i < points.size(); ++i) {
-            double sum = model.loss;
-            for (const ShelfModel& shelf : model.shelves)
-                sum += shelfLoss(shelf, points[i].x2).loss;
-            miss.push_back(std::abs(sum / points[i].loss - 1.0) * lossWeight(targets[i]) / targets[i].weight);
-            worst = std::max(worst, miss.back());
-        }
-        if (worst < 0.01 * poorPercent)
-            break;
+    for (int round = 0; round < 3 && worstPercent(model, points) > goodPercent; ++round) {
+        std::vector<double> misses = missesOf(model, points);
         double mean = 0.0;
-        for (const double m : miss)
-            mean += m * m / static_cast<double>(miss.size());
+        for (std::size_t i = 0; i < points.size(); ++i) {
+            misses[i] /= targets[i].weight;
+            mean += misses[i] * misses[i] / static_cast<double>(misses.size());
+        }
         for (std::size_t i = 0; i < points.size(); ++i) {
             const double raised =
-                targets[i].weight * std::sqrt(std::clamp(miss[i] / std::sqrt(mean), 0.5, 4.0));
+                targets[i].weight * std::sqrt(std::clamp(misses[i] / std::sqrt(mean), 0.5, 4.0));
             targets[i].weight = std::clamp(raised, 0.7, 2.5);
             points[i].weight = lossWeight(targets[i]);
         }

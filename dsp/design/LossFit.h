@@ -10,7 +10,7 @@ namespace hitchpin::design {
 double lossWeight(const LoopTarget&);
 
 /// Sets the model's loss and as few shelves (at most four) as meet the targets in ratio on the unit circle,
-/// within `goodPercent` root mean square: greedy, each new shelf the best of several corners of both kinds,
+/// within `goodPercent` at worst: greedy, each new shelf the best of several corners of both kinds,
 /// all refined together. Changes the weights of the targets so that those that are hard to meet count more.
 void fitLoss(LoopModel&, std::vector<LoopTarget>&, double goodPercent);
 

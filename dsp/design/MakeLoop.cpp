@@ -19,8 +19,8 @@ namespace {
 
 /// Above this share of the rate the first partial leaves no whole sample of delay beside the filters.
 constexpr double highestFirstPartial = 0.4;
-/// A loss fit this good (root mean square, per cent) needs no more shelves.
-constexpr double goodLossLive = 0.7, goodLossReference = 0.1;
+/// A loss fit this good (worst, per cent) needs no more shelves.
+constexpr double goodLossLive = 0.7, goodLossReference = 0.2;
 /// A phase fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
 /// Sections that are added at most where those planned do not make the partials true.

@@ -11,16 +11,9 @@
 
 namespace hitchpin::engine {
 
-/// A designed loop in the forms that a rail runs. Every form stores a known energy and none makes any:
-/// the ladders keep the sum of squares exactly; a shelf y = b0·x + c·m, m' = x − a1·m, c = b1 − a1·b0, obeys
-/// y² + |c|·m'² ≤ x² + |c|·m² whenever |H| ≤ 1 on the circle. (Bounded-real lemma for one state: a weight p serves
-/// if p² − [(1−b0²)(1−a1²) + c² + 2·a1·b0·c]·p + c² ≤ 0; the two bounds of p have the product c², so p = |c|
-/// lies between them whenever any p does.)
+/// A designed loop in the forms that a rail runs (dsp/design/Sections.h). The energy of every one is the sum of its
+/// states' squares: ladders and Thiran's section keep it, shelves never make any.
 struct RailLoop {
-    struct Shelf {
-        double b0, a1, c;
-    };
-
     RailLoop(const design::LoopDesign&, bool freeNut);
 
     int delay;        ///< samples, at least 1
@@ -28,7 +21,8 @@ struct RailLoop {
     double factor;    ///< the design's gain with the sign of the reflection at the nut
     double thiranSin; ///< the fractional delay as a plane rotation
     double thiranCos;
-    std::vector<Shelf> shelves;
+    std::vector<design::ShelfForm> shelves;
+    std::vector<design::SteepShelfForm> steepShelves;
     std::vector<design::LadderForm> sections;
 };
 
@@ -77,10 +71,11 @@ private:
     const RailLoop* loop_;
     bool running_ = false;
 
-    struct LadderState {
+    struct TwoStates {
         double m1 = 0.0, m2 = 0.0;
     };
-    std::vector<LadderState> sectionStates_;
+    std::vector<TwoStates> sectionStates_;
+    std::vector<TwoStates> steepShelfStates_;
     std::vector<double> shelfStates_;
     double thiranState_ = 0.0;
 };
