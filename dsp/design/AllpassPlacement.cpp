@@ -26,13 +26,13 @@ AllpassSection sectionOver(double from, double to, double flatness) {
 } // namespace
 
 bool placeSections(LoopModel& model, const string::Partials& partials, double sampleRate, int coveredPartial,
-                   int sections, double flatness) {
+                   int sections, double reach, double flatness) {
     const auto angle = [&](double n) { return 2.0 * pi * partials.frequency(n) / sampleRate; };
     const auto turns = [&](double n) { return partials.ends().oneFree() ? n - 0.5 : n; };
 
     // n_c: how far the sections' phase reaches.
     double last = coveredPartial;
-    const double wanted = sections / 1.1;
+    const double wanted = reach * sections;
     while (sectionsNeeded(partials, last) < wanted &&
            partials.frequency(last * 1.02 + 0.01) < highestShareOfRate * sampleRate)
         last = last * 1.02 + 0.01;

@@ -229,16 +229,19 @@ LoopModel modelOf(const LoopDesign& design) {
     return model;
 }
 
-ShelfLoss shelfLoss(const LossShelf& shelf, double x2) noexcept {
-    const double m = shelf.order, ratio = x2 / (shelf.corner * shelf.corner);
-    const double q = shelf.order == 1 ? ratio : ratio * ratio;
-    const double g = std::exp(-2.0 * m * shelf.depth), md = m * shelf.depth;
-    if (shelf.loses == LossShelf::Loses::high) {
-        const double upper = 1.0 + g * q, lower = 1.0 + q;
-        return {0.5 * std::log1p((1.0 - g) * q / upper), m * q * (g / upper - 1.0 / lower), md * g * q / upper};
-    }
-    const double upper = g + q, lower = 1.0 + q;
-    return {0.5 * std::log1p((1.0 - g) / upper), m * q * (1.0 / upper - 1.0 / lower), md * g / upper};
+ShelfLoss::ShelfLoss(const LossShelf& shelf) noexcept
+    : high_(shelf.loses == LossShelf::Loses::high), steep_(shelf.order == 2),
+      overCorner2_(1.0 / (shelf.corner * shelf.corner)), order_(shelf.order),
+      g_(std::exp(-2.0 * order_ * shelf.depth)), lost_(-std::expm1(-2.0 * order_ * shelf.depth)),
+      depth_(order_ * shelf.depth) {}
+
+ShelfLoss::At ShelfLoss::at(double x2) const noexcept {
+    // With q = (x/w)^2m: 1/|H|² = (1 + q)/(1 + g·q), or (1 + q)/(g + q) for a low shelf.
+    const double ratio = x2 * overCorner2_, q = steep_ ? ratio * ratio : ratio;
+    const double over = 1.0 / (high_ ? 1.0 + g_ * q : g_ + q);
+    const double excess = lost_ * over * (high_ ? q : 1.0);
+    const double byCorner = order_ * q * over * lost_ / (1.0 + q);
+    return {excess, high_ ? -byCorner : byCorner, depth_ * g_ * over * (high_ ? q : 1.0)};
 }
 
 double peakGain(const LoopDesign& design) {
@@ -252,7 +255,7 @@ double peakGain(const LoopDesign& design) {
                                       : lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
         double loss = -std::log(design.gain);
         for (const LossShelf& shelf : design.shelves)
-            loss += shelfLoss(shelf, x * x).loss;
+            loss += 0.5 * std::log1p(ShelfLoss(shelf).at(x * x).excess);
         least = std::min(least, loss);
     }
     return std::exp(-least);

@@ -44,11 +44,23 @@ std::complex<double> logLoopSlope(const LoopModel&, std::complex<double> s);
 /// The pole of the loop near `start`: ln L(e^p) + j2π·turns = 0, by Newton. NaN where it does not converge.
 std::complex<double> loopPole(const LoopModel&, double turns, std::complex<double> start);
 
-/// −ln|H| of one shelf on the unit circle at x² = tan²(ω/2), with its derivatives by ln corner and ln depth.
-struct ShelfLoss {
-    double loss, byCorner, byDepth;
+/// One shelf's loss on the unit circle, ready to be asked at many frequencies.
+class ShelfLoss {
+public:
+    explicit ShelfLoss(const LossShelf&) noexcept;
+
+    /// `excess` is 1/|H|² − 1, so that several shelves may share one logarithm: −ln|H| = ½·ln(1 + excess), of which
+    /// the others are the derivatives by ln corner and ln depth.
+    struct At {
+        double excess, byCorner, byDepth;
+    };
+    /// At x² = tan²(ω/2).
+    At at(double x2) const noexcept;
+
+private:
+    bool high_, steep_;
+    double overCorner2_, order_, g_, lost_, depth_; ///< g = γ^2m, lost = 1 − g
 };
-ShelfLoss shelfLoss(const LossShelf&, double x2) noexcept;
 
 /// From formula to filters and back. The model must have a Thiran section and a whole straight delay.
 LoopDesign designOf(const LoopModel&);

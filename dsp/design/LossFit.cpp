@@ -11,8 +11,7 @@ namespace hitchpin::design {
 
 namespace {
 
-#include <cstdlib>
-static const std::size_t mostShelves = getenv("MS")?atoi(getenv("MS")):4;
+constexpr std::size_t mostShelves = 6;
 
 /// Those that are tried. A low shelf of second order was never chosen.
 constexpr std::pair<LossShelf::Loses, int> kinds[] = {
@@ -24,29 +23,38 @@ struct LossPoint {
     double weight;
 };
 
+/// 1/|H|² − 1 of filters in series.
+double inSeries(double excess, double other) {
+    return excess + other + excess * other;
+}
+
 double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterations) {
     const std::size_t first = firstLossConstant(model), rows = points.size();
     std::vector<double> all = constantsOf(model);
     std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first), all.end());
+    std::vector<double> excess(rows);
     const double cost = minimiseSquares(
         [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
             if (!setConstants(model, trial, first))
                 return false;
-            for (std::size_t i = 0; i < rows; ++i) {
-                const auto& [x2, loss, weight] = points[i];
-                const double scale = 100.0 * weight / loss;
-                double sum = model.loss;
-                if (!jacobian.empty())
-                    jacobian[i] = scale * model.loss;
-                for (std::size_t k = 0; k < model.shelves.size(); ++k) {
-                    const ShelfLoss part = shelfLoss(model.shelves[k], x2);
-                    sum += part.loss;
+            std::fill(excess.begin(), excess.end(), 0.0);
+            for (std::size_t k = 0; k < model.shelves.size(); ++k) {
+                const ShelfLoss shelf(model.shelves[k]);
+                for (std::size_t i = 0; i < rows; ++i) {
+                    const ShelfLoss::At at = shelf.at(points[i].x2);
+                    excess[i] = inSeries(excess[i], at.excess);
                     if (!jacobian.empty()) {
-                        jacobian[(1 + 2 * k) * rows + i] = scale * part.byCorner;
-                        jacobian[(2 + 2 * k) * rows + i] = scale * part.byDepth;
+                        const double scale = 100.0 * points[i].weight / points[i].loss;
+                        jacobian[(1 + 2 * k) * rows + i] = scale * at.byCorner;
+                        jacobian[(2 + 2 * k) * rows + i] = scale * at.byDepth;
                     }
                 }
-                residuals[i] = scale * (sum - loss);
+            }
+            for (std::size_t i = 0; i < rows; ++i) {
+                const double scale = 100.0 * points[i].weight / points[i].loss;
+                residuals[i] = scale * (model.loss + 0.5 * std::log1p(excess[i]) - points[i].loss);
+                if (!jacobian.empty())
+                    jacobian[i] = scale * model.loss;
             }
             return true;
         },
@@ -59,10 +67,10 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
 std::vector<double> missesOf(const LoopModel& model, const std::vector<LossPoint>& points) {
     std::vector<double> misses;
     for (const auto& [x2, loss, weight] : points) {
-        double sum = model.loss;
+        double excess = 0.0;
         for (const LossShelf& shelf : model.shelves)
-            sum += shelfLoss(shelf, x2).loss;
-        misses.push_back(weight * std::abs(sum / loss - 1.0));
+            excess = inSeries(excess, ShelfLoss(shelf).at(x2).excess);
+        misses.push_back(weight * std::abs((model.loss + 0.5 * std::log1p(excess)) / loss - 1.0));
     }
     return misses;
 }

@@ -26,7 +26,7 @@ constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
 /// Sections that are added at most where those planned do not make the partials true.
 constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
-constexpr double goodT60 = 0.03;
+constexpr double goodT60 = 0.01;
 /// Steps of the last fits: of a design from nothing, and of one that begins at its neighbour.
 constexpr int coldSteps = 20, warmSteps = 6;
 
@@ -110,7 +110,11 @@ void fitJointly(const Task& task, Judged& judged, int steps) {
 /// Spreads the error of the phase evenly: what is worst counts more, round by round.
 void fitEvenly(const Task& task, Judged& judged, int steps) {
     constexpr int rounds = 6;
+    // What lies between the partials only has to stay about in line.
+    constexpr double weightBetween = 0.5;
     LoopTargets weighted = task.targets;
+    for (std::size_t i = 1; i < weighted.phase.size(); i += 2)
+        weighted.phase[i].weight *= weightBetween;
     LoopModel even = judged.model;
     for (int round = 0; round < rounds && judged.accuracy.worstCents > trueCents; ++round) {
         const std::vector<double> misses = phaseMisses(even, weighted.phase);
@@ -118,7 +122,8 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
         for (const double miss : misses)
             sum += miss * miss;
         const double mean = std::sqrt(sum / static_cast<double>(misses.size()));
-        for (std::size_t i = 0; i < misses.size(); ++i)
+        // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
+        for (std::size_t i = 1; i < misses.size(); ++i)
             weighted.phase[i].weight *= std::sqrt(std::clamp(std::abs(misses[i]) / mean, 0.5, 4.0));
         fit(even, weighted, Fitted::phase, steps);
         if (!tuneExactly(even, task.first()))
@@ -166,11 +171,13 @@ std::optional<LoopModel> fitPhase(const Task& task, const LoopModel& lossy) {
         }
         return bestCost <= usual;
     };
+    // Placed over no more than the string needs, or with one in vain at the top, which short lines may want.
+    constexpr std::pair<double, double> starts[] = {{1.0, 0.4}, {0.9, 0.4}, {1.0, 0.6}, {0.9, 0.6}};
     std::vector<double> endsSeen;
-    for (const double flatness : {0.4, 0.6, 0.5, 0.7}) {
+    for (const auto& [reach, flatness] : starts) {
         LoopModel plain = lossy;
         if (!placeSections(plain, task.partials, task.settings.sampleRate, task.plan.coveredPartial,
-                           task.plan.sections, flatness))
+                           task.plan.sections, reach, flatness))
             continue;
         // First with a plain delay, which may move far from where the placement put it.
         const double plainCost = fit(plain, task.targets, Fitted::phase, steps, enough);
