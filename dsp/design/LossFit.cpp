@@ -63,32 +63,29 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
     return cost;
 }
 
-/// By how much of its loss each point is missed, by its weight.
-std::vector<double> missesOf(const LoopModel& model, const std::vector<LossPoint>& points) {
-    std::vector<double> misses;
+double worstPercent(const LoopModel& model, const std::vector<LossPoint>& points) {
+    double worst = 0.0;
     for (const auto& [x2, loss, weight] : points) {
         double excess = 0.0;
         for (const LossShelf& shelf : model.shelves)
             excess = inSeries(excess, ShelfLoss(shelf).at(x2).excess);
-        misses.push_back(weight * std::abs((model.loss + 0.5 * std::log1p(excess)) / loss - 1.0));
+        worst = std::max(worst, 100.0 * weight * std::abs((model.loss + 0.5 * std::log1p(excess)) / loss - 1.0));
     }
-    return misses;
-}
-
-double worstPercent(const LoopModel& model, const std::vector<LossPoint>& points) {
-    const std::vector<double> misses = missesOf(model, points);
-    return 100.0 * *std::max_element(misses.begin(), misses.end());
+    return worst;
 }
 
 } // namespace
 
-double lossWeight(const LoopTarget& target) {
-    if (target.beyond)
-        return 0.2;
-    return target.weight * (target.frequency <= 6000.0 ? 1.0 : 0.3);
+double lossImportance(const LoopTarget& target) {
+    const bool counts = target.frequency <= t60CountsUpTo;
+    return counts ? 1.0 : target.beyond ? 0.2 : 0.3;
 }
 
-void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPercent) {
+double lossWeight(const LoopTarget& target) {
+    return target.weight * lossImportance(target);
+}
+
+void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, double goodPercent) {
     std::vector<LossPoint> points;
     double least = std::numeric_limits<double>::infinity();
     for (const LoopTarget& target : targets) {
@@ -141,23 +138,6 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
         model.loss += shelf.loses == LossShelf::Loses::high ? shelf.order * shelf.depth : 0.0;
         return true;
     });
-
-    // Where that leaves much, it is spread evenly: what is worst counts more, round by round.
-    for (int round = 0; round < 3 && worstPercent(model, points) > goodPercent; ++round) {
-        std::vector<double> misses = missesOf(model, points);
-        double mean = 0.0;
-        for (std::size_t i = 0; i < points.size(); ++i) {
-            misses[i] /= targets[i].weight;
-            mean += misses[i] * misses[i] / static_cast<double>(misses.size());
-        }
-        for (std::size_t i = 0; i < points.size(); ++i) {
-            const double raised =
-                targets[i].weight * std::sqrt(std::clamp(misses[i] / std::sqrt(mean), 0.5, 4.0));
-            targets[i].weight = std::clamp(raised, 0.7, 2.5);
-            points[i].weight = lossWeight(targets[i]);
-        }
-        refine(model, points, 20);
-    }
 }
 
 } // namespace hitchpin::design

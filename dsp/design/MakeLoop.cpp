@@ -12,6 +12,7 @@
 #include <cstdio>
 #include <limits>
 #include <optional>
+#include <span>
 
 namespace hitchpin::design {
 
@@ -107,6 +108,37 @@ void fitJointly(const Task& task, Judged& judged, int steps) {
         judged = std::move(joint);
 }
 
+/// Makes what is missed by more than the mean count more, and less what is missed by less.
+void weighByMisses(std::span<LoopTarget> targets, std::span<const double> misses) {
+    double sum = 0.0;
+    for (const double miss : misses)
+        sum += miss * miss;
+    const double mean = std::sqrt(sum / static_cast<double>(misses.size()));
+    for (std::size_t i = 0; i < targets.size(); ++i)
+        targets[i].weight *= std::sqrt(std::clamp(std::abs(misses[i]) / mean, 0.5, 4.0));
+}
+
+/// The loss on the damped poles, its error spread evenly: what is worst counts more, round by round.
+void fitLossEvenly(LoopTargets targets, LoopModel& model, int steps) {
+    constexpr int rounds = 4;
+    LoopModel even = model;
+    double least = std::numeric_limits<double>::infinity();
+    for (int round = 0; round < rounds && least > goodT60; ++round) {
+        fit(even, targets, Fitted::loss, steps);
+        std::vector<double> misses = lossMisses(even, targets.loss);
+        double worst = 0.0;
+        for (std::size_t i = 0; i < misses.size(); ++i) {
+            misses[i] *= lossImportance(targets.loss[i]);
+            worst = std::max(worst, std::abs(misses[i]));
+        }
+        if (worst < least) {
+            least = worst;
+            model = even;
+        }
+        weighByMisses(targets.loss, misses);
+    }
+}
+
 /// Spreads the error of the phase evenly: what is worst counts more, round by round.
 void fitEvenly(const Task& task, Judged& judged, int steps) {
     constexpr int rounds = 6;
@@ -118,13 +150,8 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
     LoopModel even = judged.model;
     for (int round = 0; round < rounds && judged.accuracy.worstCents > trueCents; ++round) {
         const std::vector<double> misses = phaseMisses(even, weighted.phase);
-        double sum = 0.0;
-        for (const double miss : misses)
-            sum += miss * miss;
-        const double mean = std::sqrt(sum / static_cast<double>(misses.size()));
         // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
-        for (std::size_t i = 1; i < misses.size(); ++i)
-            weighted.phase[i].weight *= std::sqrt(std::clamp(std::abs(misses[i]) / mean, 0.5, 4.0));
+        weighByMisses(std::span(weighted.phase).subspan(1), std::span(misses).subspan(1));
         fit(even, weighted, Fitted::phase, steps);
         if (!tuneExactly(even, task.first()))
             return;
@@ -136,8 +163,9 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
 
 /// The last steps, alike for cold and warm starts: loss on the damped poles, exact first partial, and what
 /// helps where that is not true enough.
-std::optional<LoopDesign> finish(const Task& task, LoopModel model, int steps) {
-    fit(model, task.targets, Fitted::loss, steps);
+std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
+    followBeyond(model, task.targets.loss, task.settings.sampleRate);
+    fitLossEvenly(task.targets, model, steps);
     fit(model, task.targets, Fitted::phase, steps, task.goodCost());
     if (!tuneExactly(model, task.first()))
         return std::nullopt;
