@@ -23,6 +23,11 @@ struct LossPoint {
     double weight;
 };
 
+struct Candidate {
+    LoopModel model;
+    double cost;
+};
+
 /// 1/|H|² − 1 of filters in series.
 double inSeries(double excess, double other) {
     return excess + other + excess * other;
@@ -104,9 +109,8 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, double go
                  highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
     while (worstPercent(model, points) > goodPercent && model.shelves.size() < mostShelves &&
            1 + 2 * (model.shelves.size() + 1) <= points.size()) {
-        constexpr int corners = 8;
-        LoopModel best;
-        double bestCost = std::numeric_limits<double>::infinity();
+        constexpr int corners = 8, shortlisted = 3;
+        std::vector<Candidate> candidates;
         for (int i = 0; i < corners; ++i) {
             for (const auto& [loses, order] : kinds) {
                 LoopModel candidate = model;
@@ -117,17 +121,22 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, double go
                                  [&](const LossPoint& point) { return point.x2 >= corner * corner; });
                 candidate.shelves.push_back({loses, order, corner, there->loss / order});
                 const double candidateCost = refine(candidate, few, 8);
-                if (candidateCost < bestCost) {
-                    bestCost = candidateCost;
-                    best = candidate;
-                }
+                candidates.push_back({std::move(candidate), candidateCost});
             }
         }
-        const double refined = refine(best, points, 40);
-        if (!(refined < cost))
+        std::partial_sort(candidates.begin(), candidates.begin() + shortlisted, candidates.end(),
+                          [](const Candidate& a, const Candidate& b) { return a.cost < b.cost; });
+        const double before = cost;
+        for (int i = 0; i < shortlisted; ++i) {
+            Candidate& candidate = candidates[static_cast<std::size_t>(i)];
+            const double refined = refine(candidate.model, points, 40);
+            if (refined < cost) {
+                cost = refined;
+                model = std::move(candidate.model);
+            }
+        }
+        if (!(cost < before))
             break;
-        cost = refined;
-        model = best;
     }
 
     // A shelf far below the lowest partial does the same to all of them, and would only leave a slow state that

@@ -22,8 +22,8 @@ namespace {
 constexpr double highestFirstPartial = 0.4;
 /// A loss fit this good (worst, per cent) needs no more shelves.
 constexpr double goodLossLive = 0.7, goodLossReference = 0.2;
-/// A phase fit this good (root mean square, cents) needs no further search.
-constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
+/// A phase fit this good (root mean square, and at reference quality the worst, cents) needs no further search.
+constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003, goodWorstReference = 0.15;
 /// Sections that are added at most where those planned do not make the partials true.
 constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
@@ -50,6 +50,8 @@ struct Task {
     double goodCost() const {
         return cost(settings.quality == Quality::live ? goodCentsLive : goodCentsReference);
     }
+    /// Worst partial of a loop that needs no further work.
+    double goodWorstCents() const { return settings.quality == Quality::live ? trueCents : goodWorstReference; }
     LoopAccuracy measure(const LoopModel& model) const {
         return measureLoop(model, partials, settings.sampleRate, plan);
     }
@@ -148,7 +150,7 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
     for (std::size_t i = 1; i < weighted.phase.size(); i += 2)
         weighted.phase[i].weight *= weightBetween;
     LoopModel even = judged.model;
-    for (int round = 0; round < rounds && judged.accuracy.worstCents > trueCents; ++round) {
+    for (int round = 0; round < rounds && judged.accuracy.worstCents > task.goodWorstCents(); ++round) {
         const std::vector<double> misses = phaseMisses(even, weighted.phase);
         // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
         weighByMisses(std::span(weighted.phase).subspan(1), std::span(misses).subspan(1));
@@ -171,9 +173,10 @@ std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
         return std::nullopt;
     Judged judged{model, task.measure(model)};
     const bool fewTargets = task.plan.coveredPartial <= 2 * task.plan.sections + 1;
-    if (judged.accuracy.worstT60Error > goodT60 || judged.accuracy.worstCents > trueCents || fewTargets)
+    if (judged.accuracy.worstT60Error > goodT60 || judged.accuracy.worstCents > task.goodWorstCents() ||
+        fewTargets)
         fitJointly(task, judged, steps);
-    if (judged.accuracy.worstCents > trueCents)
+    if (judged.accuracy.worstCents > task.goodWorstCents())
         fitEvenly(task, judged, steps);
     trimCoverage(judged.accuracy);
     return completed(task, judged.model, std::move(judged.accuracy));
@@ -264,7 +267,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     const int most =
         std::min({planned + mostExtra, mostSections(settings.quality), task.plan.coveredPartial - 1});
     tryWith(planned);
-    for (int sections = planned + 1; sections <= most && !(best && best->accuracy.worstCents <= trueCents);
+    for (int sections = planned + 1; sections <= most && !(best && best->accuracy.worstCents <= task.goodWorstCents());
          ++sections)
         tryWith(sections);
     // High strings may have no room for all: every section takes delay out of the line.
