@@ -20,7 +20,7 @@ constexpr int mostTrimmed = 3;
 
 /// Worst errors over the covered partials; a partial without a pole must not pass for a true one.
 void summarise(LoopAccuracy& accuracy) {
-    accuracy.worstCents = accuracy.worstT60Error = 0.0;
+    accuracy.worstCents = accuracy.meanCents = accuracy.worstT60Error = 0.0;
     int found = 0;
     for (const LoopAccuracy::PartialError& error : accuracy.partials) {
         if (error.targetHz <= t60CountsUpTo)
@@ -30,7 +30,9 @@ void summarise(LoopAccuracy& accuracy) {
         ++found;
         accuracy.coverageHz = error.targetHz;
         accuracy.worstCents = std::max(accuracy.worstCents, std::abs(error.cents));
+        accuracy.meanCents += error.cents * error.cents;
     }
+    accuracy.meanCents = std::sqrt(accuracy.meanCents / std::max(1, found));
     if (found < accuracy.coveragePartial)
         accuracy.worstCents = std::numeric_limits<double>::infinity();
 }

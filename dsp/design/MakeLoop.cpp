@@ -22,8 +22,10 @@ namespace {
 constexpr double highestFirstPartial = 0.4;
 /// A loss fit this good (worst, per cent) needs no more shelves.
 constexpr double goodLossLive = 0.7, goodLossReference = 0.2;
-/// A phase fit this good (root mean square, and at reference quality the worst, cents) needs no further search.
-constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003, goodWorstReference = 0.15;
+/// A phase fit this good (root mean square, cents) needs no further search.
+constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
+/// What the partials of a loop of reference quality are to keep, worst and root mean square, cents.
+constexpr double worstReference = 0.45, meanReference = 0.09;
 /// Sections that are added at most where those planned do not make the partials true.
 constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
@@ -50,8 +52,12 @@ struct Task {
     double goodCost() const {
         return cost(settings.quality == Quality::live ? goodCentsLive : goodCentsReference);
     }
-    /// Worst partial of a loop that needs no further work.
-    double goodWorstCents() const { return settings.quality == Quality::live ? trueCents : goodWorstReference; }
+    /// By how much the partials miss what this quality is to keep: no further work is needed up to 1.
+    double miss(const LoopAccuracy& accuracy) const {
+        if (settings.quality == Quality::live)
+            return accuracy.worstCents / trueCents;
+        return std::max(accuracy.worstCents / worstReference, accuracy.meanCents / meanReference);
+    }
     LoopAccuracy measure(const LoopModel& model) const {
         return measureLoop(model, partials, settings.sampleRate, plan);
     }
@@ -146,19 +152,21 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
     constexpr int rounds = 6;
     // What lies between the partials only has to stay about in line.
     constexpr double weightBetween = 0.5;
+    // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
+    constexpr double weightOfFirst = 16.0;
     LoopTargets weighted = task.targets;
+    weighted.phase.front().weight = weightOfFirst;
     for (std::size_t i = 1; i < weighted.phase.size(); i += 2)
         weighted.phase[i].weight *= weightBetween;
     LoopModel even = judged.model;
-    for (int round = 0; round < rounds && judged.accuracy.worstCents > task.goodWorstCents(); ++round) {
+    for (int round = 0; round < rounds && task.miss(judged.accuracy) > 1.0; ++round) {
         const std::vector<double> misses = phaseMisses(even, weighted.phase);
-        // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
         weighByMisses(std::span(weighted.phase).subspan(1), std::span(misses).subspan(1));
         fit(even, weighted, Fitted::phase, steps);
         if (!tuneExactly(even, task.first()))
             return;
         LoopAccuracy accuracy = task.measure(even);
-        if (accuracy.worstCents < judged.accuracy.worstCents)
+        if (task.miss(accuracy) < task.miss(judged.accuracy))
             judged = {even, std::move(accuracy)};
     }
 }
@@ -173,10 +181,9 @@ std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
         return std::nullopt;
     Judged judged{model, task.measure(model)};
     const bool fewTargets = task.plan.coveredPartial <= 2 * task.plan.sections + 1;
-    if (judged.accuracy.worstT60Error > goodT60 || judged.accuracy.worstCents > task.goodWorstCents() ||
-        fewTargets)
+    if (judged.accuracy.worstT60Error > goodT60 || task.miss(judged.accuracy) > 1.0 || fewTargets)
         fitJointly(task, judged, steps);
-    if (judged.accuracy.worstCents > task.goodWorstCents())
+    if (task.miss(judged.accuracy) > 1.0)
         fitEvenly(task, judged, steps);
     trimCoverage(judged.accuracy);
     return completed(task, judged.model, std::move(judged.accuracy));
@@ -259,7 +266,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
         task.plan.sections = sections;
         const auto model = fitPhase(task, lossy);
         auto design = model ? finish(task, *model, coldSteps) : std::nullopt;
-        if (design && (!best || design->accuracy.worstCents < best->accuracy.worstCents))
+        if (design && (!best || task.miss(design->accuracy) < task.miss(best->accuracy)))
             best = std::move(design);
     };
     // The count planned, and more where that is not true enough.
@@ -267,7 +274,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     const int most =
         std::min({planned + mostExtra, mostSections(settings.quality), task.plan.coveredPartial - 1});
     tryWith(planned);
-    for (int sections = planned + 1; sections <= most && !(best && best->accuracy.worstCents <= task.goodWorstCents());
+    for (int sections = planned + 1; sections <= most && !(best && task.miss(best->accuracy) <= 1.0);
          ++sections)
         tryWith(sections);
     // High strings may have no room for all: every section takes delay out of the line.
