@@ -14,9 +14,6 @@ namespace {
 using Complex = std::complex<double>;
 constexpr double pi = std::numbers::pi;
 
-/// Nepers: keeps the gain under 1 by more than the rounding of the shelves' coefficients.
-constexpr double leastLoss = 1e-12;
-
 /// Products written out: the library's own check for infinities at every turn, which costs half the design
 /// time.
 Complex times(Complex a, Complex b) {
@@ -99,7 +96,7 @@ bool setConstants(LoopModel& model, std::span<const double> constants, std::size
             AllpassSection& section = model.sections[(which - 1) / 2];
             ((which - 1) % 2 == 0 ? section.c0 : section.c1) = std::exp(value);
         } else if (which == lossAt) {
-            model.loss = std::max(leastLoss, std::exp(value));
+            model.loss = std::max(model.leastLoss, std::exp(value));
         } else {
             LossShelf& shelf = model.shelves[(which - lossAt - 1) / 2];
             ((which - lossAt - 1) % 2 == 0 ? shelf.corner : shelf.depth) = std::exp(value);
@@ -224,6 +221,7 @@ LoopModel modelOf(const LoopDesign& design) {
     model.straightDelay = design.delay;
     model.thiranDelay = thiranDelay(design.thiran);
     model.loss = -std::log(design.gain);
+    model.leastLoss = 0.5 * model.loss;
     model.sections = design.sections;
     model.shelves = design.shelves;
     return model;

@@ -14,6 +14,9 @@ struct LoopModel {
     double straightDelay = 1.0; ///< samples of pure delay, also fractional while fitting
     double thiranDelay = 0.0;   ///< samples at low frequencies; 0: no Thiran section
     double loss = 0.0;          ///< nepers once round at every frequency: gain = e^(−loss)
+    /// What the loss stays above while fitting: the gain under 1 by more than the rounding of the filters, and far
+    /// below the first partial nothing left that rings for ever.
+    double leastLoss = 1e-12;
     std::vector<AllpassSection> sections;
     std::vector<LossShelf> shelves;
 

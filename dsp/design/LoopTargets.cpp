@@ -117,7 +117,7 @@ std::vector<LoopTarget> lossTargets(const string::Partials& partials, double sam
         beyond.s = {0.0, std::tan(0.5 * angle)};
         beyond.groupDelay = std::max(beyond.groupDelay, last.groupDelay);
         beyond.loss = beyond.decayRate * beyond.groupDelay / sampleRate;
-        if (beyond.loss > mostLoss)
+        if (beyond.loss > mostLoss && beyond.frequency > t60CountsUpTo)
             break;
         targets.push_back(beyond);
     }

@@ -17,6 +17,9 @@ constexpr std::size_t mostShelves = 6;
 constexpr std::pair<LossShelf::Loses, int> kinds[] = {
     {LossShelf::Loses::high, 1}, {LossShelf::Loses::low, 1}, {LossShelf::Loses::high, 2}};
 
+/// What is lost at rest, of the least of any partial.
+constexpr double leastShare = 0.1;
+
 struct LossPoint {
     double x2; ///< tan²(ω/2)
     double loss;
@@ -103,6 +106,7 @@ void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, double go
         few.push_back(points[i]);
 
     model.loss = 0.9 * least;
+    model.leastLoss = leastShare * least;
     model.shelves.clear();
     double cost = refine(model, points, 20);
     const double lowest = std::sqrt(points.front().x2),

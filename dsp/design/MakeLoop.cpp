@@ -25,7 +25,7 @@ constexpr double goodLossLive = 0.7, goodLossReference = 0.2;
 /// A phase fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
 /// What the partials of a loop of reference quality are to keep, worst and root mean square, cents.
-constexpr double worstReference = 0.45, meanReference = 0.09;
+constexpr double worstReference = 0.45, meanReference = 0.07;
 /// Sections that are added at most where those planned do not make the partials true.
 constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
