@@ -209,8 +209,8 @@ std::optional<LoopModel> fitPhase(const Task& task, const LoopModel& lossy) {
         }
         return bestCost <= usual;
     };
-    // Placed over no more than the string needs, or with one in vain at the top, which short lines may want.
-    constexpr std::pair<double, double> starts[] = {{1.0, 0.4}, {0.9, 0.4}, {1.0, 0.6}, {0.9, 0.6}};
+    // Reach and flatness: over all that the sections can hold, or with some in vain at the top, which short lines want.
+    constexpr std::pair<double, double> starts[] = {{1.0, 0.4}, {0.9, 0.4}, {0.8, 0.6}, {0.7, 0.4}, {1.0, 0.7}};
     std::vector<double> endsSeen;
     for (const auto& [reach, flatness] : starts) {
         LoopModel plain = lossy;
