@@ -11,9 +11,9 @@ namespace hitchpin::design {
 double lossImportance(const LoopTarget&);
 double lossWeight(const LoopTarget&);
 
-/// Sets the model's loss and as few shelves (at most four) as meet the targets in ratio on the unit circle,
-/// within `goodPercent` at worst: greedy, each new shelf the best of several corners of both kinds,
-/// all refined together.
+/// Sets the model's loss and as few shelves (at most six) as meet the targets in ratio on the unit circle, within
+/// `goodPercent` at worst by their weights: greedy, each new shelf the best of several corners and kinds, all refined
+/// together. Sums of staggered shelves follow any loss that grows less than the fourth power of frequency.
 void fitLoss(LoopModel&, const std::vector<LoopTarget>&, double goodPercent);
 
 } // namespace hitchpin::design

@@ -298,11 +298,14 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
         return makeLoop(partials, settings);
     task.plan.sections = sections;
 
-    // As true as the neighbour within so much more of its error, and true at all where the neighbour was.
+    // As true as the neighbour within so much more of its error, or well within what the quality is to keep; and true
+    // at all where the neighbour was.
+    constexpr double wellWithin = 0.5;
     const LoopAccuracy& known = neighbour.accuracy;
     const auto trueEnough = [&](const LoopAccuracy& accuracy, double more) {
         const double cents = (1.0 + more) * known.worstCents + 0.2 * more;
-        return accuracy.worstCents <= std::min(cents, std::max(trueCents, known.worstCents)) &&
+        return (accuracy.worstCents <= std::min(cents, std::max(trueCents, known.worstCents)) ||
+                task.miss(accuracy) <= wellWithin) &&
                accuracy.worstT60Error <= (1.0 + more) * known.worstT60Error + 0.02 * more;
     };
     LoopModel model = scaled(modelOf(neighbour), task.first().frequency / neighbour.firstPartialHz);

@@ -71,7 +71,7 @@ struct Table {
     Worst t60{"T60 to 6 kHz, per cent", t60Share, 100.0};
     Worst treble{"T60 to 6 kHz, plain strings above C4, per cent", t60ShareOfPlainTreble, 100.0};
     Worst beyond{"T60 to 6 kHz, live, beyond the covered partials", t60ShareBeyond, 100.0};
-    Worst gain{"1 - loop gain (least), negated", 0.0};
+    Worst gain{"loop gain less 1, under", 0.0};
     int loops = 0;
 
     void print(const char* of) const {
@@ -202,8 +202,8 @@ std::vector<JudgedString> randomStrings(std::size_t count) {
 
 } // namespace
 
-// Turned red by: a low shelf for a high one, δ·Bn² without its share 1/(1+Bn²), the loss of a period for that of a
-// round trip (f0 for df/dn), a sample of delay, sections laid out for one more than there are.
+// Turned red by: a sample of delay too much in the engine's loop, the loss of a period of f1 for that of a round trip
+// (f1 for df/dn), a wrong sign in a second-order shelf.
 TEST_CASE("accuracy of the yardstick strings", "[design]") {
     Table table;
     for (const auto& string : yardstick::strings())
@@ -224,7 +224,7 @@ TEST_CASE("accuracy of random strings", "[design][random]") {
     table.print((std::to_string(count) + " random strings at four rates, live and reference").c_str());
 }
 
-// Turned red by: a shelf that the engine leaves out, swaps b for c in, or steps with another's state.
+// Turned red by: a second-order shelf that the engine leaves out, or steps with a12 for a21.
 TEST_CASE("accuracy: poles of the loop and sound of the engine agree", "[design][engine]") {
     struct Heard {
         const char* name;
@@ -240,7 +240,8 @@ TEST_CASE("accuracy: poles of the loop and sound of the engine agree", "[design]
                                               Heard{"bar-like, B 0.05", 48000.0, Quality::live},
                                               Heard{"brass C3, nut free", 44100.0, Quality::live}}) {
         const auto all = yardstick::strings();
-        const auto& string = *std::find_if(all.begin(), all.end(), [&](const auto& s) { return s.name == std::string(name); });
+        const auto& string =
+            *std::find_if(all.begin(), all.end(), [&](const auto& s) { return s.name == std::string(name); });
         const string::Partials partials = string.partials();
         const auto loop = makeLoop(partials, {rate, quality});
         REQUIRE(loop);

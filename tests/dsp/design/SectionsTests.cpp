@@ -106,7 +106,7 @@ std::complex<double> shelfAt(const LossShelf& shelf, double omega) {
            polynomial(w, s);
 }
 
-/// Feeds noise and then nothing: the largest growth of y² + |m|² over x² + |m|², and the least that is left.
+/// Feeds noise and then nothing: the largest growth of y² + |m|² over x² + |m|².
 template <class Step>
 double worstGrowth(std::mt19937& random, Step step) {
     std::normal_distribution<double> noise;
@@ -121,7 +121,7 @@ double worstGrowth(std::mt19937& random, Step step) {
 
 } // namespace
 
-// Turned red by: a wrong sign in A₁₂, √2 left out, D without its share of the feed-through, a low shelf unmirrored.
+// Turned red by: a wrong sign in A₂₁, a low shelf that is not mirrored.
 TEST_CASE("shelf, forms are the bilinear map of the formula and never make energy", "[design]") {
     std::mt19937 random(3);
     double worst = 0.0, growth = -1.0, gain = 0.0;
@@ -156,7 +156,8 @@ TEST_CASE("shelf, forms are the bilinear map of the formula and never make energ
 }
 
 TEST_CASE("shelf, second order takes as little below its corner as x to the fourth", "[design]") {
-    // |H|² = (w⁴ + γ⁴x⁴)/(w⁴ + x⁴): −ln|H| ≈ (1−γ⁴)/2·(x/w)⁴, so half the frequency loses a sixteenth. (Butterworth 1930.)
+    // |H|² = (w⁴ + γ⁴x⁴)/(w⁴ + x⁴), so that half the frequency loses a sixteenth (flat to the fourth order: Butterworth
+    // 1930).
     for (const int order : {1, 2}) {
         const LossShelf shelf{LossShelf::Loses::high, order, 0.5, 0.8};
         const ShelfLoss loss(shelf);
