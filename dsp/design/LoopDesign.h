@@ -34,7 +34,7 @@ struct LoopAccuracy {
     std::vector<PartialError> partials;
     double worstCents = 0.0;    ///< over the covered partials
     double meanCents = 0.0;     ///< root mean square over the covered partials
-    double worstT60Error = 0.0; ///< |ratio − 1| over the partials up to 6 kHz (and n = 128), also beyond the covered
+    double worstT60Error = 0.0; ///< |ratio − 1| over the covered partials up to 6 kHz
     double coverageHz = 0.0;    ///< up to which the design was made to be true
     int coveragePartial = 0;
     double peakLoopGain = 0.0; ///< over a dense grid of frequencies

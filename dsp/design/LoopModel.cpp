@@ -242,19 +242,24 @@ ShelfLoss::At ShelfLoss::at(double x2) const noexcept {
     return {excess, high_ ? -byCorner : byCorner, depth_ * g_ * over * (high_ ? q : 1.0)};
 }
 
+double circleLoss(const LoopModel& model, double omega) {
+    const double x = std::tan(0.5 * omega);
+    double loss = model.loss;
+    for (const LossShelf& shelf : model.shelves)
+        loss += 0.5 * std::log1p(ShelfLoss(shelf).at(x * x).excess);
+    return loss;
+}
+
 double peakGain(const LoopDesign& design) {
+    const LoopModel model = modelOf(design);
     constexpr int points = 1024;
     const double lowest = 1e-4; // of tan(ω/2)
     double least = std::numeric_limits<double>::infinity();
     for (int i = 0; i <= points + 1; ++i) {
         // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the rate.
-        const double x = i == 0       ? 0.0
-                         : i > points ? 1.0 / std::numeric_limits<double>::epsilon()
-                                      : lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
-        double loss = -std::log(design.gain);
-        for (const LossShelf& shelf : design.shelves)
-            loss += 0.5 * std::log1p(ShelfLoss(shelf).at(x * x).excess);
-        least = std::min(least, loss);
+        const double x = lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
+        const double omega = i == 0 ? 0.0 : i > points ? pi : 2.0 * std::atan(x);
+        least = std::min(least, circleLoss(model, omega));
     }
     return std::exp(-least);
 }

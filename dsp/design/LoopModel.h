@@ -65,6 +65,9 @@ private:
     double overCorner2_, order_, g_, lost_, depth_; ///< g = γ^2m, lost = 1 − g
 };
 
+/// −ln|L| on the unit circle at the angle ω.
+double circleLoss(const LoopModel&, double omega);
+
 /// From formula to filters and back. The model must have a Thiran section and a whole straight delay.
 LoopDesign designOf(const LoopModel&);
 LoopModel modelOf(const LoopDesign&);

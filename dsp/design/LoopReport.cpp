@@ -23,11 +23,11 @@ void summarise(LoopAccuracy& accuracy) {
     accuracy.worstCents = accuracy.meanCents = accuracy.worstT60Error = 0.0;
     int found = 0;
     for (const LoopAccuracy::PartialError& error : accuracy.partials) {
+        if (error.number > accuracy.coveragePartial)
+            break;
+        ++found;
         if (error.targetHz <= t60CountsUpTo)
             accuracy.worstT60Error = std::max(accuracy.worstT60Error, std::abs(error.t60Ratio - 1.0));
-        if (error.number > accuracy.coveragePartial)
-            continue;
-        ++found;
         accuracy.coverageHz = error.targetHz;
         accuracy.worstCents = std::max(accuracy.worstCents, std::abs(error.cents));
         accuracy.meanCents += error.cents * error.cents;

@@ -86,7 +86,9 @@ double worstPercent(const LoopModel& model, const std::vector<LossPoint>& points
 
 double lossImportance(const LoopTarget& target) {
     const bool counts = target.frequency <= t60CountsUpTo;
-    return counts ? 1.0 : target.beyond ? 0.2 : 0.3;
+    if (target.beyond)
+        return (counts ? 1.0 : 0.2) * std::min(1.0, 0.5 / target.loss);
+    return counts ? 1.0 : 0.3;
 }
 
 double lossWeight(const LoopTarget& target) {

@@ -58,6 +58,7 @@ struct Task {
             return accuracy.worstCents / trueCents;
         return std::max(accuracy.worstCents / worstReference, accuracy.meanCents / meanReference);
     }
+    double goodLoss() const { return settings.quality == Quality::live ? goodLossLive : goodLossReference; }
     LoopAccuracy measure(const LoopModel& model) const {
         return measureLoop(model, partials, settings.sampleRate, plan);
     }
@@ -102,18 +103,24 @@ struct Judged {
     LoopAccuracy accuracy;
 };
 
+/// Tunes and measures a model, which takes the place of the one judged where it is better, pitch and T60 together.
+void keepBetter(const Task& task, Judged& judged, LoopModel model) {
+    if (!tuneExactly(model, task.first()))
+        return;
+    Judged other{std::move(model), {}};
+    other.accuracy = task.measure(other.model);
+    const auto badness = [&](const LoopAccuracy& accuracy) {
+        return task.miss(accuracy) + accuracy.worstT60Error / goodT60;
+    };
+    if (badness(other.accuracy) < badness(judged.accuracy))
+        judged = std::move(other);
+}
+
 /// Phase and loss together.
 void fitJointly(const Task& task, Judged& judged, int steps) {
-    Judged joint{judged.model, {}};
-    fit(joint.model, task.targets, Fitted::both, 2 * steps);
-    if (!tuneExactly(joint.model, task.first()))
-        return;
-    joint.accuracy = task.measure(joint.model);
-    const auto badness = [](const LoopAccuracy& accuracy) {
-        return accuracy.worstCents + 100.0 / percentPerCent * accuracy.worstT60Error;
-    };
-    if (badness(joint.accuracy) < badness(judged.accuracy))
-        judged = std::move(joint);
+    LoopModel joint = judged.model;
+    fit(joint, task.targets, Fitted::both, 2 * steps);
+    keepBetter(task, judged, std::move(joint));
 }
 
 /// Makes what is missed by more than the mean count more, and less what is missed by less.
@@ -171,6 +178,23 @@ void fitEvenly(const Task& task, Judged& judged, int steps) {
     }
 }
 
+/// The shelves once more from nothing, for what is to be lost beside this line: its delay is not quite the string's.
+void fitLossAnew(const Task& task, Judged& judged, int steps) {
+    std::vector<LoopTarget> beside = task.targets.loss;
+    const std::vector<double> misses = lossMisses(judged.model, beside);
+    for (std::size_t i = 0; i < beside.size(); ++i)
+        beside[i].loss = circleLoss(judged.model, beside[i].p.imag()) - misses[i] * beside[i].loss;
+    const bool possible =
+        std::all_of(beside.begin(), beside.end(), [](const LoopTarget& target) { return target.loss > 0.0; });
+    if (!possible)
+        return;
+    LoopModel anew = judged.model;
+    fitLoss(anew, beside, task.goodLoss());
+    fitLossEvenly(task.targets, anew, steps);
+    fit(anew, task.targets, Fitted::phase, steps, task.goodCost());
+    keepBetter(task, judged, std::move(anew));
+}
+
 /// The last steps, alike for cold and warm starts: loss on the damped poles, exact first partial, and what
 /// helps where that is not true enough.
 std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
@@ -180,6 +204,8 @@ std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
     if (!tuneExactly(model, task.first()))
         return std::nullopt;
     Judged judged{model, task.measure(model)};
+    if (judged.accuracy.worstT60Error > goodT60)
+        fitLossAnew(task, judged, steps);
     const bool fewTargets = task.plan.coveredPartial <= 2 * task.plan.sections + 1;
     if (judged.accuracy.worstT60Error > goodT60 || task.miss(judged.accuracy) > 1.0 || fewTargets)
         fitJointly(task, judged, steps);
@@ -259,7 +285,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
         return *failure;
     Task task(partials, settings);
     LoopModel lossy;
-    fitLoss(lossy, task.targets.loss, settings.quality == Quality::live ? goodLossLive : goodLossReference);
+    fitLoss(lossy, task.targets.loss, task.goodLoss());
 
     std::optional<LoopDesign> best;
     const auto tryWith = [&](int sections) {

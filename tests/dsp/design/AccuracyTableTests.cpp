@@ -33,9 +33,10 @@ constexpr double t60Share = 0.04, t60ShareOfPlainTreble = 0.01; // of partials u
 constexpr double accurateTo = 10000.0, t60To = 6000.0;        // Hz
 constexpr int mostPartials = 120;
 constexpr double middleC = 261.63; // Hz: C4
-/// Where twelve sections end far below 6 kHz the loop's poles beyond lie hundreds of cents off, and are no longer
-/// partials of that string. They still decay with it; 4 per cent is met there by all but the stiffest bass strings.
-constexpr double t60ShareBeyond = 0.10;
+/// Where twelve sections end below 6 kHz the loop's poles beyond lie up to hundreds of cents off, and are no longer
+/// partials of that string. They still decay with it, though stiff bass strings miss the 4 per cent there; so much is
+/// kept where a partial lasts a while, and loses less than half a neper a round.
+constexpr double t60ShareBeyond = 0.10, lastingLoss = 0.5;
 
 struct JudgedString {
     std::string name;
@@ -126,7 +127,8 @@ void judge(Table& table, const JudgedString& string, double rate, Quality qualit
                 worstAt = n;
             }
         }
-        if (target <= t60To) {
+        const bool lasts = decay < lastingLoss * partials.slope(n);
+        if (target <= t60To && (lasts || n <= loop.accuracy.coveragePartial)) {
             double& of = n <= loop.accuracy.coveragePartial ? worstT60 : worstBeyond;
             if (&of == &worstT60 && t60 > of)
                 worstT60At = n;
