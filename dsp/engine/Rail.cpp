@@ -149,7 +149,7 @@ void Rail::listen(const Place& place, int count) noexcept {
 }
 
 double Rail::sumOfSquares() const noexcept {
-    double sum = chain_.sumOfSquares(loop_->chain);
+    double sum = chain_.sumOfSquares();
     for (int age = 1; age <= loop_->delay; ++age) {
         const double wave = line_[(next_ - static_cast<std::size_t>(age)) & mask_];
         sum += wave * wave;
