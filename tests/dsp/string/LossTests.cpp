@@ -104,3 +104,31 @@ TEST_CASE("A winding's loss and the core's constant add", "[string]") {
     const auto with = [&] { d.build.windings = {w}; return strungToTension(d, 300.0)->partials.inverseQ(3); }();
     CHECK(with - without == Approx(7e-4).epsilon(1e-9));
 }
+
+// Valette and Cuesta's drag by the diameter, R = 2πη + 2πd√(πηρ_a·f) (from memory), as a force per metre and velocity:
+// 1/Q = R/(2πf·μ). A winding makes the string as thick as it is outside.
+// Turned red by: the string's diameter handed over as its radius.
+TEST_CASE("A string at tension has the drag of its own diameter and mass", "[string]") {
+    constexpr double airDensity = 1.2, viscosity = airDensity * 1.5e-5;
+    Description d;
+    d.speakingLength = 0.65;
+    d.build.core = {*findBuiltInMaterial("music wire"), 0.254e-3, CoreShape::round, Measured::atPitch};
+    d.build.core.material.bendingLoss = d.build.core.material.constantLoss = 0.0;
+    for (const double windingMm : {0.0, 0.3}) {
+        CAPTURE(windingMm);
+        if (windingMm > 0.0) {
+            Winding w;
+            w.material = *findBuiltInMaterial("copper");
+            w.diameter = windingMm * 1e-3;
+            d.build.windings = {w};
+        }
+        const auto strung = strungToTension(d, 70.0);
+        REQUIRE(strung);
+        const double diameter = 0.254e-3 + 2e-3 * windingMm;
+        for (const int n : {1, 4, 16}) {
+            const double f = strung->partials.frequency(n);
+            const double drag = 2.0 * M_PI * viscosity + 2.0 * M_PI * diameter * std::sqrt(M_PI * viscosity * airDensity * f);
+            CHECK(strung->partials.inverseQ(n) == Approx(drag / (2.0 * M_PI * f * strung->statics.linearDensity)).epsilon(1e-9));
+        }
+    }
+}

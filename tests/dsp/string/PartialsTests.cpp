@@ -131,7 +131,7 @@ std::vector<double> bordersOn(std::vector<double> steps, int between) {
 
 } // namespace
 
-// Turned red by: the bare lengths exchanged, the lack of mass taken from the core's.
+// Turned red by: the nut's bare length taken at the bridge too, or both at the nut.
 TEST_CASE("Bare ends of windings agree with beam elements", "[string]") {
     // With as many sines as a schedule's 24 partials take, a tenth of what a live loop may err by; with as many as
     // the sound takes, a hundredth.
