@@ -4,6 +4,7 @@
 
 #include "dsp/analysis/Measure.h"
 #include "dsp/design/Sections.h"
+#include "tests/support/Worse.h"
 #include "tests/support/YardstickStrings.h"
 
 #include <catch2/catch.hpp>
@@ -119,13 +120,12 @@ Judged judge(const LoopDesign& loop, const string::Partials& partials) {
         const double cents = std::abs(analysis::centsBetween(pole.frequency, target));
         if (n == 1)
             judged.firstCents = cents;
-        if (cents > judged.worstCents) {
-            judged.worstCents = cents;
+        if (!(cents <= judged.worstCents))
             judged.worstPartial = n;
-        }
+        judged.worstCents = support::worse(judged.worstCents, cents);
         if (target <= 6000.0)
             judged.worstT60 =
-                std::max(judged.worstT60, std::abs(partials.decayRate(n) / pole.decayRate - 1.0));
+                support::worse(judged.worstT60, std::abs(partials.decayRate(n) / pole.decayRate - 1.0));
     }
     return judged;
 }
@@ -226,8 +226,8 @@ TEST_CASE("loop, first partial of a whole compass at every rate", "[design]") {
             INFO("key " << key << " at " << rate << " Hz");
             checkSound(loop);
             CHECK(std::abs(analysis::centsBetween(pole.frequency, f1)) <= firstPartialCents);
-            worst = std::max(worst, std::abs(analysis::centsBetween(pole.frequency, f1)));
-            worstAll = std::max(worstAll, loop.accuracy.worstCents);
+            worst = support::worse(worst, std::abs(analysis::centsBetween(pole.frequency, f1)));
+            worstAll = support::worse(worstAll, loop.accuracy.worstCents);
         }
     }
     std::cout << "loop, first partials A0 to C8, 22.05 to 192 kHz: worst " << worst
@@ -286,8 +286,8 @@ TEST_CASE("loop, heard through its own filters", "[design]") {
             CHECK(std::abs(cents - error.cents) < 0.001);
             CHECK(std::abs(measured[i].t60 / partials.t60(static_cast<double>(i + 1)) / error.t60Ratio -
                            1.0) < 0.002);
-            worstCents = std::max(worstCents, std::abs(cents - error.cents));
-            worstT60 = std::max(
+            worstCents = support::worse(worstCents, std::abs(cents - error.cents));
+            worstT60 = support::worse(
                 worstT60,
                 std::abs(measured[i].t60 / partials.t60(static_cast<double>(i + 1)) / error.t60Ratio - 1.0));
         }
@@ -323,8 +323,8 @@ TEST_CASE("loop, sound for any string", "[design]") {
         const double cents = std::abs(analysis::centsBetween(pole.frequency, partials.frequency(1)));
         CHECK(cents <= firstPartialCents);
         CHECK(peakGainOf(loop, 500) < 1.0);
-        worstFirst = std::max(worstFirst, cents);
-        worstPeak = std::max(worstPeak, loop.accuracy.peakLoopGain);
+        worstFirst = support::worse(worstFirst, cents);
+        worstPeak = support::worse(worstPeak, loop.accuracy.peakLoopGain);
         poor += loop.accuracy.worstCents > partialCents ? 1 : 0;
     }
     std::cout << "loop, " << count << " random strings: first partial within " << worstFirst

@@ -1,6 +1,7 @@
 // How long partials ring. τ is the amplitude's time constant throughout: T60 = ln(1000)·τ = 2.1988·Q/f.
 #include "dsp/string/Partials.h"
 #include "dsp/string/Strung.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -40,7 +41,7 @@ TEST_CASE("Air damps a thin cylinder as Stokes found", "[string]") {
         const double tau = 1.0 / ringing({0.0, 0.0, r, row.density * M_PI * r * r}, row.f).decayRate(1);
         CAPTURE(row.r, row.f);
         CHECK(tau == Approx(row.closed).epsilon(5e-4));
-        worst = std::max(worst, std::abs(tau / row.exact - 1.0));
+        worst = hitchpin::support::worse(worst, std::abs(tau / row.exact - 1.0));
     }
     std::cout << "air: closed form against Bessel functions, worst " << 100.0 * worst << " % (allowed 3.5, on the finest string)\n";
     CHECK(worst < 0.035);
@@ -74,7 +75,7 @@ TEST_CASE("Bending loss is Woodhouse's, and his strings ring as published", "[st
         };
         for (const auto& [n, printed] : {std::pair{1, row.q1}, {5, row.q5}, {10, row.q10}, {20, row.q20}}) {
             CHECK(q(n) == Approx(printed).margin(0.51));
-            worst = std::max(worst, std::abs(q(n) / printed - 1.0));
+            worst = hitchpin::support::worse(worst, std::abs(q(n) / printed - 1.0));
         }
         CHECK(2.1988 * q(1) / bendingAlone.frequency(1) == Approx(row.t60First).margin(0.006));
         CHECK(2.1988 * q(10) / bendingAlone.frequency(10) == Approx(row.t60Tenth).margin(0.006));

@@ -3,6 +3,7 @@
 #include "dsp/analysis/Measure.h"
 #include "dsp/string/Strung.h"
 #include "tests/support/BeamElements.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -173,7 +174,7 @@ TEST_CASE("A wound string with bare ends sounds as beam elements of its own mass
     for (int n = 1; n <= 24; ++n) {
         const double off = std::abs(centsBetween(strung->partials.frequency(n), f0 * elements[static_cast<std::size_t>(n - 1)]));
         CHECK(off <= allowed);
-        worst = std::max(worst, off);
+        worst = hitchpin::support::worse(worst, off);
     }
     std::cout << "a wound string's 24 partials against beam elements of its masses: worst " << worst << " cent (allowed "
               << allowed << ")\n";
