@@ -1,9 +1,9 @@
 #!/usr/bin/env bash
 # Puts the faults of tests/faults.txt one by one into a copy of the sources, builds it, and runs the tests that each
 # is to turn red: a check that cannot fail checks nothing. Takes some minutes.
-#   bash tests/faults.sh [WORDS]    those whose description holds WORDS; all without. Ends with 1 if one goes unseen
+#   bash tests/faults.sh [WORDS]          those whose description holds WORDS, or all. Ends with 1 if one goes unseen
 #   bash tests/faults.sh --apply [LIST]   at once: whether each still fits the sources and names tests that exist, and
-#                                   whether each test that says what turns it red is named
+#                                         whether each test that says what turns it red is named
 set -euo pipefail
 cd "$(dirname "$0")/.."
 list=tests/faults.txt
