@@ -1,6 +1,7 @@
 // Energy on strings and boards grows by plucks alone.
 #include "dsp/engine/Engine.h"
 #include "tests/support/PlainInstruments.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -120,7 +121,7 @@ double worstGrowth(std::mt19937& random, int samples, long& looks) {
             const double after = engine.energy();
             most = std::max(most, after);
             if (listens && before > 0.0) {
-                worst = std::max(worst, (after - before) / most);
+                worst = support::worse(worst, (after - before) / most);
                 ++looks;
             }
             before = after;
@@ -142,7 +143,7 @@ TEST_CASE("Energy never grows by itself over random instruments", "[engine][rand
         const double growth = worstGrowth(random, samples, looks);
         if (growth > allowedGrowth)
             UNSCOPED_INFO("seed " << seed << " grows by " << growth);
-        worst = std::max(worst, growth);
+        worst = support::worse(worst, growth);
     }
     std::cout << instruments << " random instruments, " << samples << " samples each, " << looks
               << " looks: energy grows at most by " << worst << " of its peak (allowed " << allowedGrowth << ")\n";
