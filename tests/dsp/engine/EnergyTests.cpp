@@ -9,6 +9,7 @@
 #include <cmath>
 #include <cstdlib>
 #include <iostream>
+#include <limits>
 #include <random>
 
 using namespace hitchpin;
@@ -118,6 +119,8 @@ double worstGrowth(std::mt19937& random, int samples, long& looks) {
         for (int i = 0; i < steps && done < samples; ++i) {
             engine.process(out.data(), nullptr, step);
             done += step;
+            if (!std::all_of(out.begin(), out.begin() + step, [](double x) { return std::isfinite(x); }))
+                return std::numeric_limits<double>::infinity();
             const double after = engine.energy();
             most = std::max(most, after);
             if (listens && before > 0.0) {
