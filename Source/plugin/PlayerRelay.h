@@ -1,4 +1,5 @@
-// Which players sound: the newest takes the keys, the one before it rings on, and the one before that is faded.
+// Which players sound: the newest goes on with the strings of the one before, or where it cannot, takes the keys while
+// that one rings on.
 #pragma once
 
 #include "Source/plugin/Handover.h"
@@ -11,12 +12,13 @@
 
 namespace hitchpin::plugin {
 
-/// The audio thread's end of a handover. `Prepared` has a member `player` with playing::Player's process(),
-/// reset() and silent(); a plain template, so that the exchange can be tested without a whole instrument.
+/// The audio thread's end of a handover. `Prepared` has a member `player` with playing::Player's process(), takeOver(),
+/// takingOver(), reset() and silent(); a plain template, so that the exchange can be tested without a whole instrument.
 ///
-/// A new player takes every note from now on. The one before keeps ringing, hears of releases and pedals but of
-/// no new notes, and goes when it is silent; when yet another comes it is faded out instead. So at most three
-/// sound, and there is never a step in the sound.
+/// A new player takes every note from now on. Where it has the same strings, changed, it takes over those that ring and all
+/// keys and pedals; the one before is kept, silent, until that is done. Where it has others, the one before keeps ringing,
+/// hears of releases and pedals but of no new notes, and goes when it is silent; when yet another such comes it is faded
+/// out instead. So at most three sound, and there is never a step in the sound.
 ///
 /// Everything but the destructor and clear() is real-time safe.
 template <class Prepared>
@@ -48,6 +50,11 @@ public:
             returnSpent();
             return false;
         }
+        if (current_ != nullptr && next->player.takeOver(current_->player)) {
+            yielding_ = current_;
+            current_ = next;
+            return true;
+        }
         fading_ = ringing_;
         fadeLeft_ = fading_ != nullptr ? fadeFrames_ : 0;
         ringing_ = current_;
@@ -56,8 +63,8 @@ public:
         return true;
     }
 
-    /// Whether a new player could be taken now: not while one is being faded out.
-    bool hasRoom() const noexcept { return fading_ == nullptr; }
+    /// Whether a new player could be taken now: not while one is being faded out or taken over.
+    bool hasRoom() const noexcept { return fading_ == nullptr && yielding_ == nullptr; }
 
     const Prepared* current() const noexcept { return current_; }
 
@@ -126,7 +133,7 @@ public:
 
     /// Frees everything; not while the audio thread may call.
     void clear() {
-        for (Prepared** place : {&current_, &ringing_, &fading_}) {
+        for (Prepared** place : {&current_, &yielding_, &ringing_, &fading_}) {
             delete *place;
             *place = nullptr;
         }
@@ -137,6 +144,8 @@ public:
 
 private:
     void returnSpent() noexcept {
+        if (yielding_ != nullptr && !current_->player.takingOver() && handover_.giveBack(yielding_))
+            yielding_ = nullptr;
         if (ringing_ != nullptr && ringing_->player.silent() && handover_.giveBack(ringing_))
             ringing_ = nullptr;
         if (fading_ != nullptr && (fadeLeft_ == 0 || fading_->player.silent()) && handover_.giveBack(fading_)) {
@@ -147,6 +156,7 @@ private:
 
     Handover<Prepared>& handover_;
     Prepared* current_ = nullptr;
+    Prepared* yielding_ = nullptr; ///< whose strings the current one is taking over
     Prepared* ringing_ = nullptr;
     Prepared* fading_ = nullptr;
     int fadeFrames_ = 1;

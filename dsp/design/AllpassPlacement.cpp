@@ -26,7 +26,7 @@ AllpassSection sectionOver(double from, double to, double flatness) {
 } // namespace
 
 bool placeSections(LoopModel& model, const string::Partials& partials, double sampleRate, int coveredPartial,
-                   int sections, double flatness, double share, double lead) {
+                   int sections, double reach, double flatness, double share, double lead) {
     const auto angle = [&](double n) { return 2.0 * pi * partials.frequency(n) / sampleRate; };
     const auto turns = [&](double n) {
         return share * (partials.ends().oneFree() ? n - 0.5 : n) + lead * angle(n) / (2.0 * pi);
@@ -35,7 +35,7 @@ bool placeSections(LoopModel& model, const string::Partials& partials, double sa
 
     // n_c: how far the sections' phase reaches.
     double last = coveredPartial;
-    const double wanted = sections / 1.1;
+    const double wanted = reach * sections;
     while (needed(last) < wanted &&
            partials.frequency(last * 1.02 + 0.01) < highestShareOfRate * sampleRate)
         last = last * 1.02 + 0.01;

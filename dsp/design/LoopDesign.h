@@ -11,11 +11,16 @@ struct AllpassSection {
     double c1;
 };
 
-/// First-order section (b0 + b1·z⁻¹)/(1 + a1·z⁻¹) with |H| ≤ 1 at every frequency, by construction.
+/// A shelf that loses what lies on one side of its corner, of order m = 1 or 2 (Butterworth). With
+/// s = (1−z⁻¹)/(1+z⁻¹), D₁(w, s) = w + s, D₂(w, s) = w² + √2·w·s + s² and γ = e^(−depth):
+/// high: H = D(w, γs)/D(w, s)   low: H = D(γw, s)/D(w, s).
+/// |H|² = (w^2m + γ^2m·x^2m)/(w^2m + x^2m) at s = jx (high; low alike with γ at w): never over 1, by construction.
+/// The loss grows from nothing as x^2m, and at most by m·depth nepers in all.
 struct LossShelf {
-    double b0;
-    double b1;
-    double a1;
+    enum class Loses { high, low } loses = Loses::high;
+    int order = 1;
+    double corner = 1.0; ///< w = tan(ω/2)
+    double depth = 0.1;  ///< nepers per order
 };
 
 /// How true a loop is, found from the poles of the loop itself (Newton on 1 − L(z) = 0).
@@ -28,6 +33,7 @@ struct LoopAccuracy {
     };
     std::vector<PartialError> partials;
     double worstCents = 0.0;    ///< over the covered partials
+    double meanCents = 0.0;     ///< root mean square over the covered partials
     double worstT60Error = 0.0; ///< |ratio − 1| over the covered partials up to 6 kHz
     double coverageHz = 0.0;    ///< up to which the design was made to be true
     int coveragePartial = 0;

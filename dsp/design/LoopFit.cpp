@@ -142,7 +142,7 @@ LoopModel scaled(LoopModel model, double ratio) {
         section.c0 *= ratio * ratio;
         section.c1 *= ratio;
     }
-    for (ShelfModel& shelf : model.shelves)
+    for (LossShelf& shelf : model.shelves)
         shelf.corner *= ratio;
     const double delay = model.delay() / ratio;
     double line = std::max(1.0, std::round(delay - model.thiranDelay));
@@ -155,6 +155,23 @@ LoopModel scaled(LoopModel model, double ratio) {
     return model;
 }
 
+void followBeyond(const LoopModel& model, std::vector<LoopTarget>& loss, double sampleRate) {
+    double stretch = 1.0; // of the pole's frequency against the string's, which changes steadily
+    for (LoopTarget& target : loss) {
+        if (!target.beyond)
+            continue;
+        const double wanted = 2.0 * pi * target.frequency / sampleRate;
+        const Complex pole = loopPole(model, target.turns, {-target.decayRate / sampleRate, stretch * wanted});
+        if (std::isnan(pole.imag()))
+            return;
+        stretch = pole.imag() / wanted;
+        target.p = {0.0, pole.imag()};
+        target.s = {0.0, std::tan(0.5 * pole.imag())};
+        target.groupDelay = -logLoopSlope(model, target.s).real();
+        target.loss = target.decayRate * target.groupDelay / sampleRate;
+    }
+}
+
 std::vector<double> phaseMisses(const LoopModel& model, const std::vector<LoopTarget>& targets) {
     std::vector<double> cents;
     for (const LoopTarget& target : targets) {
@@ -163,6 +180,15 @@ std::vector<double> phaseMisses(const LoopModel& model, const std::vector<LoopTa
                         (target.p.imag() * target.groupDelay));
     }
     return cents;
+}
+
+std::vector<double> lossMisses(const LoopModel& model, const std::vector<LoopTarget>& targets) {
+    std::vector<double> shares;
+    for (const LoopTarget& target : targets) {
+        const double line = target.beyond ? target.loss : logLine(model, target.p, target.s).real();
+        shares.push_back(-(line + logLoss(model, target.s).real()) / target.loss);
+    }
+    return shares;
 }
 
 } // namespace hitchpin::design

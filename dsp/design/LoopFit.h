@@ -40,7 +40,12 @@ bool tuneExactly(LoopModel&, const LoopTarget&);
 /// near where it was.
 LoopModel scaled(LoopModel, double ratio);
 
-/// Cents by which the loop's phase misses each phase target.
+/// Beyond the covered partials the loop goes its own way. Moves the loss targets there to where its poles lie, with
+/// what has to be lost on a round as long as it is there.
+void followBeyond(const LoopModel&, std::vector<LoopTarget>& loss, double sampleRate);
+
+/// Cents by which the loop's phase misses each phase target, and shares by which its loss misses each loss target.
 std::vector<double> phaseMisses(const LoopModel&, const std::vector<LoopTarget>&);
+std::vector<double> lossMisses(const LoopModel&, const std::vector<LoopTarget>&);
 
 } // namespace hitchpin::design

@@ -14,9 +14,6 @@ namespace {
 using Complex = std::complex<double>;
 constexpr double pi = std::numbers::pi;
 
-/// Nepers: keeps the gain under 1 by more than the rounding of the shelves' coefficients.
-constexpr double leastLoss = 1e-12;
-
 /// Products written out: the library's own check for infinities at every turn, which costs half the design
 /// time.
 Complex times(Complex a, Complex b) {
@@ -39,14 +36,24 @@ bool higherAngle(Complex a, Complex b) {
     return b.real() * a.imag() - b.imag() * a.real() > 0.0;
 }
 
-struct ShelfParts {
-    Complex upper;
-    Complex lower;
+/// D(w, s) of a shelf's order and s·dD/ds.
+struct ShelfPart {
+    Complex value;
+    Complex growth;
 };
-ShelfParts partsOf(const ShelfModel& shelf, double gamma, Complex s) {
-    if (shelf.loses == ShelfModel::Loses::high)
-        return {shelf.corner + gamma * s, shelf.corner + s};
-    return {gamma * shelf.corner + s, shelf.corner + s};
+ShelfPart shelfPart(int order, double w, Complex s) {
+    if (order == 1)
+        return {w + s, s};
+    const Complex first = (std::numbers::sqrt2 * w) * s, second = times(s, s);
+    return {w * w + first + second, first + 2.0 * second};
+}
+ShelfPart upperPart(const LossShelf& shelf, Complex s) {
+    const double gamma = std::exp(-shelf.depth);
+    return shelf.loses == LossShelf::Loses::high ? shelfPart(shelf.order, shelf.corner, gamma * s)
+                                                 : shelfPart(shelf.order, gamma * shelf.corner, s);
+}
+ShelfPart lowerPart(const LossShelf& shelf, Complex s) {
+    return shelfPart(shelf.order, shelf.corner, s);
 }
 
 } // namespace
@@ -66,7 +73,7 @@ std::vector<double> constantsOf(const LoopModel& model) {
         constants.push_back(std::log(section.c1));
     }
     constants.push_back(std::log(model.loss));
-    for (const ShelfModel& shelf : model.shelves) {
+    for (const LossShelf& shelf : model.shelves) {
         constants.push_back(std::log(shelf.corner));
         constants.push_back(std::log(shelf.depth));
     }
@@ -89,9 +96,9 @@ bool setConstants(LoopModel& model, std::span<const double> constants, std::size
             AllpassSection& section = model.sections[(which - 1) / 2];
             ((which - 1) % 2 == 0 ? section.c0 : section.c1) = std::exp(value);
         } else if (which == lossAt) {
-            model.loss = std::max(leastLoss, std::exp(value));
+            model.loss = std::max(model.leastLoss, std::exp(value));
         } else {
-            ShelfModel& shelf = model.shelves[(which - lossAt - 1) / 2];
+            LossShelf& shelf = model.shelves[(which - lossAt - 1) / 2];
             ((which - lossAt - 1) % 2 == 0 ? shelf.corner : shelf.depth) = std::exp(value);
         }
     }
@@ -144,16 +151,16 @@ Complex logLoss(const LoopModel& model, Complex s, std::span<Complex> byConstant
     if (derivatives)
         byConstant[0] = -model.loss;
     for (std::size_t i = 0; i < model.shelves.size(); ++i) {
-        const ShelfModel& shelf = model.shelves[i];
-        const double gamma = std::exp(-shelf.depth);
-        const auto [upper, lower] = partsOf(shelf, gamma, s);
+        const LossShelf& shelf = model.shelves[i];
+        const auto [upper, upperGrowth] = upperPart(shelf, s);
+        const auto [lower, lowerGrowth] = lowerPart(shelf, s);
         sum += logQuotient(upper, lower);
         if (derivatives) {
-            const Complex overUpper = inverse(upper), overLower = inverse(lower);
-            const bool high = shelf.loses == ShelfModel::Loses::high;
-            byConstant[1 + 2 * i] = shelf.corner * ((high ? 1.0 : gamma) * overUpper - overLower);
+            // D is homogeneous in w and s of degree m: w·dD/dw = m·D − s·dD/ds.
+            const Complex up = times(upperGrowth, inverse(upper)), down = times(lowerGrowth, inverse(lower));
+            byConstant[1 + 2 * i] = down - up;
             byConstant[2 + 2 * i] =
-                (-gamma * shelf.depth) * times(high ? s : Complex(shelf.corner), overUpper);
+                -shelf.depth * (shelf.loses == LossShelf::Loses::high ? up : Complex(shelf.order) - up);
         }
     }
     return sum;
@@ -168,10 +175,10 @@ Complex logLoopSlope(const LoopModel& model, Complex s) {
     }
     for (const auto& [c0, c1] : model.sections)
         byS += (2.0 * c1) * times(s2 - c0, inverse(times(s2 - c1 * s + c0, s2 + c1 * s + c0)));
-    for (const ShelfModel& shelf : model.shelves) {
-        const double gamma = std::exp(-shelf.depth);
-        const auto [upper, lower] = partsOf(shelf, gamma, s);
-        byS += (shelf.loses == ShelfModel::Loses::high ? gamma : 1.0) * inverse(upper) - inverse(lower);
+    for (const LossShelf& shelf : model.shelves) {
+        const auto [upper, upperGrowth] = upperPart(shelf, s);
+        const auto [lower, lowerGrowth] = lowerPart(shelf, s);
+        byS += times(times(upperGrowth, inverse(upper)) - times(lowerGrowth, inverse(lower)), inverse(s));
     }
     return -model.straightDelay + times(byS, 0.5 * (1.0 - s2)); // ds/dp = (1−s²)/2
 }
@@ -205,13 +212,7 @@ LoopDesign designOf(const LoopModel& model) {
     design.thiran = thiranCoefficient(model.thiranDelay);
     design.gain = std::exp(-model.loss);
     design.sections = model.sections;
-    for (const ShelfModel& shelf : model.shelves) {
-        const double w = shelf.corner, gamma = std::exp(-shelf.depth), a1 = (w - 1.0) / (w + 1.0);
-        if (shelf.loses == ShelfModel::Loses::high)
-            design.shelves.push_back({(w + gamma) / (w + 1.0), (w - gamma) / (w + 1.0), a1});
-        else
-            design.shelves.push_back({(gamma * w + 1.0) / (w + 1.0), (gamma * w - 1.0) / (w + 1.0), a1});
-    }
+    design.shelves = model.shelves;
     return design;
 }
 
@@ -220,36 +221,47 @@ LoopModel modelOf(const LoopDesign& design) {
     model.straightDelay = design.delay;
     model.thiranDelay = thiranDelay(design.thiran);
     model.loss = -std::log(design.gain);
+    model.leastLoss = 0.5 * model.loss;
     model.sections = design.sections;
-    for (const LossShelf& shelf : design.shelves) {
-        ShelfModel back;
-        back.corner = (1.0 + shelf.a1) / (1.0 - shelf.a1);
-        const double atRest = (shelf.b0 + shelf.b1) / (1.0 + shelf.a1);
-        const double atHalfRate = (shelf.b0 - shelf.b1) / (1.0 - shelf.a1);
-        back.loses = atHalfRate <= atRest ? ShelfModel::Loses::high : ShelfModel::Loses::low;
-        back.depth = std::max(1e-15, -std::log(std::min(atRest, atHalfRate)));
-        model.shelves.push_back(back);
-    }
+    model.shelves = design.shelves;
     return model;
 }
 
+ShelfLoss::ShelfLoss(const LossShelf& shelf) noexcept
+    : high_(shelf.loses == LossShelf::Loses::high), steep_(shelf.order == 2),
+      overCorner2_(1.0 / (shelf.corner * shelf.corner)), order_(shelf.order),
+      g_(std::exp(-2.0 * order_ * shelf.depth)), lost_(-std::expm1(-2.0 * order_ * shelf.depth)),
+      depth_(order_ * shelf.depth) {}
+
+ShelfLoss::At ShelfLoss::at(double x2) const noexcept {
+    // With q = (x/w)^2m: 1/|H|² = (1 + q)/(1 + g·q), or (1 + q)/(g + q) for a low shelf.
+    const double ratio = x2 * overCorner2_, q = steep_ ? ratio * ratio : ratio;
+    const double over = 1.0 / (high_ ? 1.0 + g_ * q : g_ + q);
+    const double excess = lost_ * over * (high_ ? q : 1.0);
+    const double byCorner = order_ * q * over * lost_ / (1.0 + q);
+    return {excess, high_ ? -byCorner : byCorner, depth_ * g_ * over * (high_ ? q : 1.0)};
+}
+
+double circleLoss(const LoopModel& model, double omega) {
+    const double x = std::tan(0.5 * omega);
+    double loss = model.loss;
+    for (const LossShelf& shelf : model.shelves)
+        loss += 0.5 * std::log1p(ShelfLoss(shelf).at(x * x).excess);
+    return loss;
+}
+
 double peakGain(const LoopDesign& design) {
+    const LoopModel model = modelOf(design);
     constexpr int points = 1024;
     const double lowest = 1e-4; // of tan(ω/2)
-    double peak = 0.0;
+    double least = std::numeric_limits<double>::infinity();
     for (int i = 0; i <= points + 1; ++i) {
-        // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the
-        // rate.
+        // Rest, then evenly in ln tan(ω/2) through to its mirror image below half the rate, then half the rate.
         const double x = lowest * std::pow(1.0 / (lowest * lowest), (i - 1.0) / (points - 1.0));
-        const Complex back = i == 0       ? Complex(1.0)
-                             : i > points ? Complex(-1.0)
-                                          : Complex(1.0, -x) / Complex(1.0, x);
-        double squared = design.gain * design.gain;
-        for (const LossShelf& shelf : design.shelves)
-            squared *= std::norm(shelf.b0 + shelf.b1 * back) / std::norm(1.0 + shelf.a1 * back);
-        peak = std::max(peak, std::sqrt(squared));
+        const double omega = i == 0 ? 0.0 : i > points ? pi : 2.0 * std::atan(x);
+        least = std::min(least, circleLoss(model, omega));
     }
-    return peak;
+    return std::exp(-least);
 }
 
 } // namespace hitchpin::design

@@ -10,20 +10,15 @@
 
 namespace hitchpin::design {
 
-/// s = (1−z⁻¹)/(1+z⁻¹), w the corner tan(ω/2), γ = e^(−depth) < 1. High: (w + γs)/(w + s) loses above the
-/// corner; low: (γw + s)/(w + s) loses below it. |H| ≤ 1 by construction.
-struct ShelfModel {
-    enum class Loses { high, low } loses = Loses::high;
-    double corner = 1.0;
-    double depth = 0.1; ///< nepers
-};
-
 struct LoopModel {
     double straightDelay = 1.0; ///< samples of pure delay, also fractional while fitting
     double thiranDelay = 0.0;   ///< samples at low frequencies; 0: no Thiran section
     double loss = 0.0;          ///< nepers once round at every frequency: gain = e^(−loss)
+    /// What the loss stays above while fitting: the gain under 1 by more than the rounding of the filters, and far
+    /// below the first partial nothing left that rings for ever.
+    double leastLoss = 1e-12;
     std::vector<AllpassSection> sections;
-    std::vector<ShelfModel> shelves;
+    std::vector<LossShelf> shelves;
 
     double delay() const noexcept { return straightDelay + thiranDelay; }
 };
@@ -51,6 +46,27 @@ std::complex<double> logLoopSlope(const LoopModel&, std::complex<double> s);
 
 /// The pole of the loop near `start`: ln L(e^p) + j2π·turns = 0, by Newton. NaN where it does not converge.
 std::complex<double> loopPole(const LoopModel&, double turns, std::complex<double> start);
+
+/// One shelf's loss on the unit circle, ready to be asked at many frequencies.
+class ShelfLoss {
+public:
+    explicit ShelfLoss(const LossShelf&) noexcept;
+
+    /// `excess` is 1/|H|² − 1, so that several shelves may share one logarithm: −ln|H| = ½·ln(1 + excess), of which
+    /// the others are the derivatives by ln corner and ln depth.
+    struct At {
+        double excess, byCorner, byDepth;
+    };
+    /// At x² = tan²(ω/2).
+    At at(double x2) const noexcept;
+
+private:
+    bool high_, steep_;
+    double overCorner2_, order_, g_, lost_, depth_; ///< g = γ^2m, lost = 1 − g
+};
+
+/// −ln|L| on the unit circle at the angle ω.
+double circleLoss(const LoopModel&, double omega);
 
 /// From formula to filters and back. The model must have a Thiran section and a whole straight delay.
 LoopDesign designOf(const LoopModel&);

@@ -12,27 +12,27 @@ namespace {
 using Complex = std::complex<double>;
 constexpr double centsPerNeper = 1200.0 / std::numbers::ln2;
 
-/// The report goes at least this far, also where the fit does not.
-constexpr int leastReported = 64;
+/// The report goes at least this far, also where the fit does not, and to this one while its T60 counts.
+constexpr int leastReported = 64, mostReported = 128;
 constexpr double reportedShareOfRate = 0.45;
 /// Partials at the end of the covered ones that may be given up.
 constexpr int mostTrimmed = 3;
-/// Hz: higher up nobody hears how long a partial rings.
-constexpr double t60CountsUpTo = 6000.0;
 
 /// Worst errors over the covered partials; a partial without a pole must not pass for a true one.
 void summarise(LoopAccuracy& accuracy) {
-    accuracy.worstCents = accuracy.worstT60Error = 0.0;
+    accuracy.worstCents = accuracy.meanCents = accuracy.worstT60Error = 0.0;
     int found = 0;
     for (const LoopAccuracy::PartialError& error : accuracy.partials) {
         if (error.number > accuracy.coveragePartial)
             break;
         ++found;
-        accuracy.coverageHz = error.targetHz;
-        accuracy.worstCents = std::max(accuracy.worstCents, std::abs(error.cents));
         if (error.targetHz <= t60CountsUpTo)
             accuracy.worstT60Error = std::max(accuracy.worstT60Error, std::abs(error.t60Ratio - 1.0));
+        accuracy.coverageHz = error.targetHz;
+        accuracy.worstCents = std::max(accuracy.worstCents, std::abs(error.cents));
+        accuracy.meanCents += error.cents * error.cents;
     }
+    accuracy.meanCents = std::sqrt(accuracy.meanCents / std::max(1, found));
     if (found < accuracy.coveragePartial)
         accuracy.worstCents = std::numeric_limits<double>::infinity();
 }
@@ -44,9 +44,10 @@ LoopAccuracy measureLoop(const LoopModel& model, const string::Partials& partial
     LoopAccuracy accuracy;
     accuracy.coveragePartial = plan.coveredPartial;
     double cents = 0.0;
-    for (int n = 1; n <= std::max(plan.coveredPartial, leastReported); ++n) {
+    for (int n = 1; n <= mostReported; ++n) {
         const LoopTarget target = targetAt(partials, sampleRate, n);
-        if (n > plan.coveredPartial && target.frequency > reportedShareOfRate * sampleRate)
+        const bool counts = n <= leastReported || target.frequency <= t60CountsUpTo;
+        if (n > plan.coveredPartial && !(counts && target.frequency <= reportedShareOfRate * sampleRate))
             break;
         // Beyond the covered partials the loop drifts away steadily: start from where the last one was.
         const Complex start(target.p.real(), target.p.imag() * std::exp(cents / centsPerNeper));

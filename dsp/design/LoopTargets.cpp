@@ -104,16 +104,20 @@ std::vector<LoopTarget> lossTargets(const string::Partials& partials, double sam
     const double step = coveredPartial < 4 ? 0.5 : 1.0 + coveredPartial / 40;
     for (double n = 1.0; n <= coveredPartial; n += coveredPartial >= 4 && n < 12.0 ? 1.0 : step)
         targets.push_back(targetAt(partials, sampleRate, n));
-    const double lastDelay = targets.back().groupDelay;
-    const double highest = std::min(hearing, usableShareOfRate * sampleRate);
-    for (double n = coveredPartial * 1.15 + 1.0; partials.frequency(n) < highest; n *= 1.15) {
+    // Beyond, the loop goes on with the delay that it has there, and its poles fall behind the string's.
+    const LoopTarget last = targets.back();
+    for (double n = coveredPartial * 1.15 + 1.0; partials.frequency(n) < hearing; n *= 1.15) {
         LoopTarget beyond = targetAt(partials, sampleRate, n);
+        const double angle =
+            std::min(beyond.p.imag(), last.p.imag() + 2.0 * pi * (n - last.number) / last.groupDelay);
+        if (angle > 2.0 * pi * usableShareOfRate)
+            break;
         beyond.beyond = true;
-        beyond.p = {0.0, beyond.p.imag()};
-        beyond.s = {0.0, std::tan(0.5 * beyond.p.imag())};
-        beyond.groupDelay = std::max(beyond.groupDelay, lastDelay);
+        beyond.p = {0.0, angle};
+        beyond.s = {0.0, std::tan(0.5 * angle)};
+        beyond.groupDelay = std::max(beyond.groupDelay, last.groupDelay);
         beyond.loss = beyond.decayRate * beyond.groupDelay / sampleRate;
-        if (beyond.loss > mostLoss)
+        if (beyond.loss > mostLoss && beyond.frequency > t60CountsUpTo)
             break;
         targets.push_back(beyond);
     }

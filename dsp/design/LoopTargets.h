@@ -8,6 +8,9 @@
 
 namespace hitchpin::design {
 
+/// Hz: higher up nobody hears how long a partial rings.
+inline constexpr double t60CountsUpTo = 6000.0;
+
 struct LoopTarget {
     double number;          ///< n, also between whole partials
     double turns;           ///< of phase once round: n, or n − ½ where one end is free

@@ -11,9 +11,14 @@ namespace hitchpin::design {
 
 namespace {
 
-constexpr std::size_t mostShelves = 4;
-/// Worst error of a fit that is good as it is.
-constexpr double poorPercent = 2.0;
+constexpr std::size_t mostShelves = 6;
+
+/// Those that are tried. Low shelves of second order, tried as well, made no loop truer and every design slower.
+constexpr std::pair<LossShelf::Loses, int> kinds[] = {
+    {LossShelf::Loses::high, 1}, {LossShelf::Loses::low, 1}, {LossShelf::Loses::high, 2}};
+
+/// What is lost at rest, of the least of any partial.
+constexpr double leastShare = 0.1;
 
 struct LossPoint {
     double x2; ///< tan²(ω/2)
@@ -21,43 +26,43 @@ struct LossPoint {
     double weight;
 };
 
-/// −ln|H| of one shelf at x = tan(ω/2), and its derivatives by ln corner and ln depth.
-struct ShelfLoss {
-    double loss, byCorner, byDepth;
+struct Candidate {
+    LoopModel model;
+    double cost;
 };
-ShelfLoss shelfLoss(const ShelfModel& shelf, double x2) {
-    const double w2 = shelf.corner * shelf.corner, g2 = std::exp(-2.0 * shelf.depth);
-    if (shelf.loses == ShelfModel::Loses::high) {
-        const double upper = w2 + g2 * x2, lower = w2 + x2;
-        return {0.5 * std::log(lower / upper), w2 / lower - w2 / upper, shelf.depth * g2 * x2 / upper};
-    }
-    const double upper = g2 * w2 + x2, lower = w2 + x2;
-    return {0.5 * std::log(lower / upper), w2 / lower - g2 * w2 / upper, shelf.depth * g2 * w2 / upper};
+
+/// 1/|H|² − 1 of filters in series.
+double inSeries(double excess, double other) {
+    return excess + other + excess * other;
 }
 
 double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterations) {
     const std::size_t first = firstLossConstant(model), rows = points.size();
     std::vector<double> all = constantsOf(model);
     std::vector<double> constants(all.begin() + static_cast<std::ptrdiff_t>(first), all.end());
+    std::vector<double> excess(rows);
     const double cost = minimiseSquares(
         [&](std::span<const double> trial, std::span<double> residuals, std::span<double> jacobian) {
             if (!setConstants(model, trial, first))
                 return false;
-            for (std::size_t i = 0; i < rows; ++i) {
-                const auto& [x2, loss, weight] = points[i];
-                const double scale = 100.0 * weight / loss;
-                double sum = model.loss;
-                if (!jacobian.empty())
-                    jacobian[i] = scale * model.loss;
-                for (std::size_t k = 0; k < model.shelves.size(); ++k) {
-                    const ShelfLoss part = shelfLoss(model.shelves[k], x2);
-                    sum += part.loss;
+            std::fill(excess.begin(), excess.end(), 0.0);
+            for (std::size_t k = 0; k < model.shelves.size(); ++k) {
+                const ShelfLoss shelf(model.shelves[k]);
+                for (std::size_t i = 0; i < rows; ++i) {
+                    const ShelfLoss::At at = shelf.at(points[i].x2);
+                    excess[i] = inSeries(excess[i], at.excess);
                     if (!jacobian.empty()) {
-                        jacobian[(1 + 2 * k) * rows + i] = scale * part.byCorner;
-                        jacobian[(2 + 2 * k) * rows + i] = scale * part.byDepth;
+                        const double scale = 100.0 * points[i].weight / points[i].loss;
+                        jacobian[(1 + 2 * k) * rows + i] = scale * at.byCorner;
+                        jacobian[(2 + 2 * k) * rows + i] = scale * at.byDepth;
                     }
                 }
-                residuals[i] = scale * (sum - loss);
+            }
+            for (std::size_t i = 0; i < rows; ++i) {
+                const double scale = 100.0 * points[i].weight / points[i].loss;
+                residuals[i] = scale * (model.loss + 0.5 * std::log1p(excess[i]) - points[i].loss);
+                if (!jacobian.empty())
+                    jacobian[i] = scale * model.loss;
             }
             return true;
         },
@@ -66,15 +71,31 @@ double refine(LoopModel& model, const std::vector<LossPoint>& points, int iterat
     return cost;
 }
 
-} // namespace
-
-double lossWeight(const LoopTarget& target) {
-    if (target.beyond)
-        return 0.2;
-    return target.weight * (target.frequency <= 6000.0 ? 1.0 : 0.3);
+double worstPercent(const LoopModel& model, const std::vector<LossPoint>& points) {
+    double worst = 0.0;
+    for (const auto& [x2, loss, weight] : points) {
+        double excess = 0.0;
+        for (const LossShelf& shelf : model.shelves)
+            excess = inSeries(excess, ShelfLoss(shelf).at(x2).excess);
+        worst = std::max(worst, 100.0 * weight * std::abs((model.loss + 0.5 * std::log1p(excess)) / loss - 1.0));
+    }
+    return worst;
 }
 
-void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPercent) {
+} // namespace
+
+double lossImportance(const LoopTarget& target) {
+    const bool counts = target.frequency <= t60CountsUpTo;
+    if (target.beyond)
+        return (counts ? 1.0 : 0.2) * std::min(1.0, 0.5 / target.loss);
+    return counts ? 1.0 : 0.3;
+}
+
+double lossWeight(const LoopTarget& target) {
+    return target.weight * lossImportance(target);
+}
+
+void fitLoss(LoopModel& model, const std::vector<LoopTarget>& targets, double goodPercent) {
     std::vector<LossPoint> points;
     double least = std::numeric_limits<double>::infinity();
     for (const LoopTarget& target : targets) {
@@ -87,72 +108,51 @@ void fitLoss(LoopModel& model, std::vector<LoopTarget>& targets, double goodPerc
         few.push_back(points[i]);
 
     model.loss = 0.9 * least;
+    model.leastLoss = leastShare * least;
     model.shelves.clear();
-    const double good = goodPercent * goodPercent * static_cast<double>(points.size());
     double cost = refine(model, points, 20);
     const double lowest = std::sqrt(points.front().x2),
                  highest = std::max(2.0 * lowest, std::sqrt(points.back().x2));
-    while (cost > good && model.shelves.size() < mostShelves &&
+    while (worstPercent(model, points) > goodPercent && model.shelves.size() < mostShelves &&
            1 + 2 * (model.shelves.size() + 1) <= points.size()) {
-        constexpr int corners = 8;
-        LoopModel best;
-        double bestCost = std::numeric_limits<double>::infinity();
+        constexpr int corners = 8, shortlisted = 3;
+        std::vector<Candidate> candidates;
         for (int i = 0; i < corners; ++i) {
-            for (const auto loses : {ShelfModel::Loses::high, ShelfModel::Loses::low}) {
+            for (const auto& [loses, order] : kinds) {
                 LoopModel candidate = model;
                 const double corner = lowest * std::pow(highest / lowest, (i + 0.5) / corners);
                 // As deep as what is to be lost at its corner.
                 const auto there =
                     std::find_if(points.begin(), points.end() - 1,
                                  [&](const LossPoint& point) { return point.x2 >= corner * corner; });
-                candidate.shelves.push_back({loses, corner, there->loss});
+                candidate.shelves.push_back({loses, order, corner, there->loss / order});
                 const double candidateCost = refine(candidate, few, 8);
-                if (candidateCost < bestCost) {
-                    bestCost = candidateCost;
-                    best = candidate;
-                }
+                candidates.push_back({std::move(candidate), candidateCost});
             }
         }
-        const double refined = refine(best, points, 40);
-        if (!(refined < cost))
+        std::partial_sort(candidates.begin(), candidates.begin() + shortlisted, candidates.end(),
+                          [](const Candidate& a, const Candidate& b) { return a.cost < b.cost; });
+        const double before = cost;
+        for (int i = 0; i < shortlisted; ++i) {
+            Candidate& candidate = candidates[static_cast<std::size_t>(i)];
+            const double refined = refine(candidate.model, points, 40);
+            if (refined < cost) {
+                cost = refined;
+                model = std::move(candidate.model);
+            }
+        }
+        if (!(cost < before))
             break;
-        cost = refined;
-        model = best;
     }
 
     // A shelf far below the lowest partial does the same to all of them, and would only leave a slow state that
     // no damper reaches: what it takes is part of the constant.
-    std::erase_if(model.shelves, [&](const ShelfModel& shelf) {
+    std::erase_if(model.shelves, [&](const LossShelf& shelf) {
         if (shelf.corner > lowest / 16.0)
             return false;
-        model.loss += shelf.loses == ShelfModel::Loses::high ? shelf.depth : 0.0;
+        model.loss += shelf.loses == LossShelf::Loses::high ? shelf.order * shelf.depth : 0.0;
         return true;
     });
-
-    // Where that leaves much, it is spread evenly: what is worst counts more, round by round.
-    for (int round = 0; round < 3; ++round) {
-        std::vector<double> miss;
-        double worst = 0.0;
-        for (std::size_t i = 0; i < points.size(); ++i) {
-            double sum = model.loss;
-            for (const ShelfModel& shelf : model.shelves)
-                sum += shelfLoss(shelf, points[i].x2).loss;
-            miss.push_back(std::abs(sum / points[i].loss - 1.0) * lossWeight(targets[i]) / targets[i].weight);
-            worst = std::max(worst, miss.back());
-        }
-        if (worst < 0.01 * poorPercent)
-            break;
-        double mean = 0.0;
-        for (const double m : miss)
-            mean += m * m / static_cast<double>(miss.size());
-        for (std::size_t i = 0; i < points.size(); ++i) {
-            const double raised =
-                targets[i].weight * std::sqrt(std::clamp(miss[i] / std::sqrt(mean), 0.5, 4.0));
-            targets[i].weight = std::clamp(raised, 0.7, 2.5);
-            points[i].weight = lossWeight(targets[i]);
-        }
-        refine(model, points, 20);
-    }
 }
 
 } // namespace hitchpin::design

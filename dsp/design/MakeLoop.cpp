@@ -12,6 +12,7 @@
 #include <cstdio>
 #include <limits>
 #include <optional>
+#include <span>
 
 namespace hitchpin::design {
 
@@ -19,14 +20,16 @@ namespace {
 
 /// Above this share of the rate the first partial leaves no whole sample of delay beside the filters.
 constexpr double highestFirstPartial = 0.4;
-/// A loss fit this good (root mean square, per cent) needs no more shelves.
-constexpr double goodLossLive = 0.7, goodLossReference = 0.1;
+/// A loss fit this good (worst, per cent) needs no more shelves.
+constexpr double goodLossLive = 0.7, goodLossReference = 0.2;
 /// A phase fit this good (root mean square, cents) needs no further search.
 constexpr double goodCentsLive = 0.02, goodCentsReference = 0.003;
+/// What the partials of a loop of reference quality are to keep, worst and root mean square, cents.
+constexpr double worstReference = 0.45, meanReference = 0.07;
 /// Sections that are added at most where those planned do not make the partials true.
 constexpr int mostExtra = 4;
 /// Losses off by more than this are fitted again together with the phase.
-constexpr double goodT60 = 0.03;
+constexpr double goodT60 = 0.01;
 /// Steps of the last fits: of a design from nothing, and of one that begins at its neighbour.
 constexpr int coldSteps = 20, warmSteps = 6;
 
@@ -49,6 +52,13 @@ struct Task {
     double goodCost() const {
         return cost(settings.quality == Quality::live ? goodCentsLive : goodCentsReference);
     }
+    /// By how much the partials miss what this quality is to keep: no further work is needed up to 1.
+    double miss(const LoopAccuracy& accuracy) const {
+        if (settings.quality == Quality::live)
+            return accuracy.worstCents / trueCents;
+        return std::max(accuracy.worstCents / worstReference, accuracy.meanCents / meanReference);
+    }
+    double goodLoss() const { return settings.quality == Quality::live ? goodLossLive : goodLossReference; }
     LoopAccuracy measure(const LoopModel& model) const {
         return measureLoop(model, partials, settings.sampleRate, plan);
     }
@@ -93,54 +103,113 @@ struct Judged {
     LoopAccuracy accuracy;
 };
 
+/// Tunes and measures a model, which takes the place of the one judged where it is better, pitch and T60 together.
+void keepBetter(const Task& task, Judged& judged, LoopModel model) {
+    if (!tuneExactly(model, task.first()))
+        return;
+    Judged other{std::move(model), {}};
+    other.accuracy = task.measure(other.model);
+    const auto badness = [&](const LoopAccuracy& accuracy) {
+        return task.miss(accuracy) + accuracy.worstT60Error / goodT60;
+    };
+    if (badness(other.accuracy) < badness(judged.accuracy))
+        judged = std::move(other);
+}
+
 /// Phase and loss together.
 void fitJointly(const Task& task, Judged& judged, int steps) {
-    Judged joint{judged.model, {}};
-    fit(joint.model, task.targets, Fitted::both, 2 * steps);
-    if (!tuneExactly(joint.model, task.first()))
-        return;
-    joint.accuracy = task.measure(joint.model);
-    const auto badness = [](const LoopAccuracy& accuracy) {
-        return accuracy.worstCents + 100.0 / percentPerCent * accuracy.worstT60Error;
-    };
-    if (badness(joint.accuracy) < badness(judged.accuracy))
-        judged = std::move(joint);
+    LoopModel joint = judged.model;
+    fit(joint, task.targets, Fitted::both, 2 * steps);
+    keepBetter(task, judged, std::move(joint));
+}
+
+/// Makes what is missed by more than the mean count more, and less what is missed by less.
+void weighByMisses(std::span<LoopTarget> targets, std::span<const double> misses) {
+    double sum = 0.0;
+    for (const double miss : misses)
+        sum += miss * miss;
+    const double mean = std::sqrt(sum / static_cast<double>(misses.size()));
+    for (std::size_t i = 0; i < targets.size(); ++i)
+        targets[i].weight *= std::sqrt(std::clamp(std::abs(misses[i]) / mean, 0.5, 4.0));
+}
+
+/// The loss on the damped poles, its error spread evenly: what is worst counts more, round by round.
+void fitLossEvenly(LoopTargets targets, LoopModel& model, int steps) {
+    constexpr int rounds = 4;
+    LoopModel even = model;
+    double least = std::numeric_limits<double>::infinity();
+    for (int round = 0; round < rounds && least > goodT60; ++round) {
+        fit(even, targets, Fitted::loss, steps);
+        std::vector<double> misses = lossMisses(even, targets.loss);
+        double worst = 0.0;
+        for (std::size_t i = 0; i < misses.size(); ++i) {
+            misses[i] *= lossImportance(targets.loss[i]);
+            worst = std::max(worst, std::abs(misses[i]));
+        }
+        if (worst < least) {
+            least = worst;
+            model = even;
+        }
+        weighByMisses(targets.loss, misses);
+    }
 }
 
 /// Spreads the error of the phase evenly: what is worst counts more, round by round.
 void fitEvenly(const Task& task, Judged& judged, int steps) {
     constexpr int rounds = 6;
+    // What lies between the partials only has to stay about in line.
+    constexpr double weightBetween = 0.5;
+    // The first stays where it is: it is tuned exactly afterwards, and its miss would shift all others.
+    constexpr double weightOfFirst = 16.0;
     LoopTargets weighted = task.targets;
+    weighted.phase.front().weight = weightOfFirst;
+    for (std::size_t i = 1; i < weighted.phase.size(); i += 2)
+        weighted.phase[i].weight *= weightBetween;
     LoopModel even = judged.model;
-    for (int round = 0; round < rounds && judged.accuracy.worstCents > trueCents; ++round) {
+    for (int round = 0; round < rounds && task.miss(judged.accuracy) > 1.0; ++round) {
         const std::vector<double> misses = phaseMisses(even, weighted.phase);
-        double sum = 0.0;
-        for (const double miss : misses)
-            sum += miss * miss;
-        const double mean = std::sqrt(sum / static_cast<double>(misses.size()));
-        for (std::size_t i = 0; i < misses.size(); ++i)
-            weighted.phase[i].weight *= std::sqrt(std::clamp(std::abs(misses[i]) / mean, 0.5, 4.0));
+        weighByMisses(std::span(weighted.phase).subspan(1), std::span(misses).subspan(1));
         fit(even, weighted, Fitted::phase, steps);
         if (!tuneExactly(even, task.first()))
             return;
         LoopAccuracy accuracy = task.measure(even);
-        if (accuracy.worstCents < judged.accuracy.worstCents)
+        if (task.miss(accuracy) < task.miss(judged.accuracy))
             judged = {even, std::move(accuracy)};
     }
 }
 
+/// The shelves once more from nothing, for what is to be lost beside this line: its delay is not quite the string's.
+void fitLossAnew(const Task& task, Judged& judged, int steps) {
+    std::vector<LoopTarget> beside = task.targets.loss;
+    const std::vector<double> misses = lossMisses(judged.model, beside);
+    for (std::size_t i = 0; i < beside.size(); ++i)
+        beside[i].loss = circleLoss(judged.model, beside[i].p.imag()) - misses[i] * beside[i].loss;
+    const bool possible =
+        std::all_of(beside.begin(), beside.end(), [](const LoopTarget& target) { return target.loss > 0.0; });
+    if (!possible)
+        return;
+    LoopModel anew = judged.model;
+    fitLoss(anew, beside, task.goodLoss());
+    fitLossEvenly(task.targets, anew, steps);
+    fit(anew, task.targets, Fitted::phase, steps, task.goodCost());
+    keepBetter(task, judged, std::move(anew));
+}
+
 /// The last steps, alike for cold and warm starts: loss on the damped poles, exact first partial, and what
 /// helps where that is not true enough.
-std::optional<LoopDesign> finish(const Task& task, LoopModel model, int steps) {
-    fit(model, task.targets, Fitted::loss, steps);
+std::optional<LoopDesign> finish(Task task, LoopModel model, int steps) {
+    followBeyond(model, task.targets.loss, task.settings.sampleRate);
+    fitLossEvenly(task.targets, model, steps);
     fit(model, task.targets, Fitted::phase, steps, task.goodCost());
     if (!tuneExactly(model, task.first()))
         return std::nullopt;
     Judged judged{model, task.measure(model)};
+    if (judged.accuracy.worstT60Error > goodT60)
+        fitLossAnew(task, judged, steps);
     const bool fewTargets = task.plan.coveredPartial <= 2 * task.plan.sections + 1;
-    if (judged.accuracy.worstT60Error > goodT60 || judged.accuracy.worstCents > trueCents || fewTargets)
+    if (judged.accuracy.worstT60Error > goodT60 || task.miss(judged.accuracy) > 1.0 || fewTargets)
         fitJointly(task, judged, steps);
-    if (judged.accuracy.worstCents > trueCents)
+    if (task.miss(judged.accuracy) > 1.0)
         fitEvenly(task, judged, steps);
     trimCoverage(judged.accuracy);
     return completed(task, judged.model, std::move(judged.accuracy));
@@ -166,11 +235,13 @@ std::optional<LoopModel> fitPhase(const Task& task, const LoopModel& lossy) {
         }
         return bestCost <= usual;
     };
+    // Reach and flatness: over all that the sections can hold, or with some in vain at the top, which short lines want.
+    constexpr std::pair<double, double> starts[] = {{1.0, 0.4}, {0.9, 0.4}, {0.8, 0.6}, {0.7, 0.4}, {1.0, 0.7}};
     std::vector<double> endsSeen;
-    for (const double flatness : {0.4, 0.6, 0.5, 0.7}) {
+    for (const auto& [reach, flatness] : starts) {
         LoopModel plain = lossy;
         if (!placeSections(plain, task.partials, task.settings.sampleRate, task.plan.coveredPartial,
-                           task.plan.sections, flatness))
+                           task.plan.sections, reach, flatness))
             continue;
         // First with a plain delay, which may move far from where the placement put it.
         const double plainCost = fit(plain, task.targets, Fitted::phase, steps, enough);
@@ -214,14 +285,14 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
         return *failure;
     Task task(partials, settings);
     LoopModel lossy;
-    fitLoss(lossy, task.targets.loss, settings.quality == Quality::live ? goodLossLive : goodLossReference);
+    fitLoss(lossy, task.targets.loss, task.goodLoss());
 
     std::optional<LoopDesign> best;
     const auto tryWith = [&](int sections) {
         task.plan.sections = sections;
         const auto model = fitPhase(task, lossy);
         auto design = model ? finish(task, *model, coldSteps) : std::nullopt;
-        if (design && (!best || design->accuracy.worstCents < best->accuracy.worstCents))
+        if (design && (!best || task.miss(design->accuracy) < task.miss(best->accuracy)))
             best = std::move(design);
     };
     // The count planned, and more where that is not true enough.
@@ -229,7 +300,7 @@ Result<LoopDesign> makeLoop(const string::Partials& partials, const LoopSettings
     const int most =
         std::min({planned + mostExtra, mostSections(settings.quality), task.plan.coveredPartial - 1});
     tryWith(planned);
-    for (int sections = planned + 1; sections <= most && !(best && best->accuracy.worstCents <= trueCents);
+    for (int sections = planned + 1; sections <= most && !(best && task.miss(best->accuracy) <= 1.0);
          ++sections)
         tryWith(sections);
     // High strings may have no room for all: every section takes delay out of the line.
@@ -253,11 +324,14 @@ Result<LoopDesign> retuneLoop(const LoopDesign& neighbour, const string::Partial
         return makeLoop(partials, settings);
     task.plan.sections = sections;
 
-    // As true as the neighbour within so much more of its error, and true at all where the neighbour was.
+    // As true as the neighbour within so much more of its error, or well within what the quality is to keep; and true
+    // at all where the neighbour was.
+    constexpr double wellWithin = 0.5;
     const LoopAccuracy& known = neighbour.accuracy;
     const auto trueEnough = [&](const LoopAccuracy& accuracy, double more) {
         const double cents = (1.0 + more) * known.worstCents + 0.2 * more;
-        return accuracy.worstCents <= std::min(cents, std::max(trueCents, known.worstCents)) &&
+        return (accuracy.worstCents <= std::min(cents, std::max(trueCents, known.worstCents)) ||
+                task.miss(accuracy) <= wellWithin) &&
                accuracy.worstT60Error <= (1.0 + more) * known.worstT60Error + 0.02 * more;
     };
     LoopModel model = scaled(modelOf(neighbour), task.first().frequency / neighbour.firstPartialHz);

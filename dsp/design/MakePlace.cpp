@@ -203,6 +203,7 @@ Judged fitFromNeighbour(Task& task, const PlaceDesign& neighbour) {
 
 Judged fitSide(Task& task) {
     constexpr int steps = 30;
+    constexpr double reach = 0.9;
     const LoopModel lossy = lossySide(task);
     const int covered = std::max(1, task.loop.accuracy.coveragePartial);
     // Near half the rate a Thiran section alone leaves gaps between whole samples: one section is always there.
@@ -214,8 +215,8 @@ Judged fitSide(Task& task) {
         task.setLead(2.0 * sections + 2.0);
         for (const double flatness : {0.5, 0.7}) {
             LoopModel model = lossy;
-            if (!placeSections(model, task.partials, task.loop.sampleRate, covered, sections, flatness, task.share,
-                               task.targets.lead))
+            if (!placeSections(model, task.partials, task.loop.sampleRate, covered, sections, reach, flatness,
+                               task.share, task.targets.lead))
                 continue;
             Judged next = fitFrom(task, std::move(model), steps);
             if (next.badness < best.badness)

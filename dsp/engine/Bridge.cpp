@@ -68,6 +68,19 @@ void Bridge::clear() noexcept {
     peak_ = 0.0;
 }
 
+void Bridge::takeOver(const Bridge& before) noexcept {
+    clear();
+    if (modes_.size() != before.modes_.size())
+        return;
+    for (std::size_t m = 0; m < modes_.size(); ++m) {
+        modes_[m].u = before.modes_[m].u;
+        modes_[m].e = before.modes_[m].e;
+    }
+    ringing_ = before.ringing_;
+    fadeLeft_ = before.fadeLeft_;
+    fadeStep_ = before.fadeStep_;
+}
+
 void Bridge::fade(int samples) noexcept {
     if (!ringing_)
         return;

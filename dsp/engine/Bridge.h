@@ -27,6 +27,8 @@ public:
     int firstComponent(Direction direction) const noexcept { return first_[direction]; }
 
     void clear() noexcept;
+    /// Goes on moving as `before` does, where both have the same number of modes; else it starts at rest.
+    void takeOver(const Bridge& before) noexcept;
     /// The modes die away within so many samples.
     void fade(int samples) noexcept;
     bool ringing() const noexcept { return ringing_; }

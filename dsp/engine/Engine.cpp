@@ -31,6 +31,7 @@ constexpr double silenced = 0.005;
 constexpr double damperFalls = 0.005;
 constexpr double damperLeaves = 0.001;
 constexpr double listeningMoves = 0.005;
+constexpr double takesOver = 0.020;
 
 enum Side { left, right, plain };
 /// What is heard on either side, and of the plain sum.
@@ -105,6 +106,8 @@ struct Engine::Running {
     void hear(const Gains& from, const Gains& to, const double* heard, double* leftOut, double* rightOut, int offset,
               int count) noexcept;
     void restWhatIsOver() noexcept;
+    bool canTakeOver(const Running& before) const noexcept;
+    void takeOver(Running& before) noexcept;
 
     double energyOf(const String& string, const Rail& rail) const noexcept {
         return string.impedance * rail.sumOfSquares() / sampleRate;
@@ -115,6 +118,7 @@ struct Engine::Running {
     std::vector<String> strings;
     std::vector<Driven> bridges;
     std::int64_t clock = 0; ///< the next sample
+    bool takingOver = false; ///< looked at when resting is
 
     Listening listening;
     std::int64_t listeningSettled = 0; ///< sample from which `heardTo` holds alone
@@ -162,6 +166,7 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
 
 void Engine::Running::reset() noexcept {
     clock = 0;
+    takingOver = false;
     for (String& string : strings) {
         string.speaking = 0;
         string.damperT60 = 0.0;
@@ -177,6 +182,59 @@ void Engine::Running::reset() noexcept {
         driven.stillUntil = 0;
     }
     setListening(listening);
+}
+
+bool Engine::Running::canTakeOver(const Running& before) const noexcept {
+    if (takingOver || before.takingOver || sampleRate != before.sampleRate || strings.size() != before.strings.size() ||
+        bridges.size() != before.bridges.size())
+        return false;
+    for (std::size_t i = 0; i < strings.size(); ++i) {
+        const String &own = strings[i], &other = before.strings[i];
+        if (own.stops.size() != other.stops.size() || own.freeBridge != other.freeBridge ||
+            (own.bridge < 0) != (other.bridge < 0) || own.stops.front().freeNut != other.stops.front().freeNut)
+            return false;
+        for (std::size_t s = 0; s < own.slots.size(); ++s)
+            for (const Direction direction : {across, into})
+                if (!own.slots[s].rails[direction].canTakeOver(other.slots[s].rails[direction]))
+                    return false;
+    }
+    return true;
+}
+
+void Engine::Running::takeOver(Running& before) noexcept {
+    clock = before.clock;
+    takingOver = true;
+    for (std::size_t i = 0; i < strings.size(); ++i) {
+        String& string = strings[i];
+        String& other = before.strings[i];
+        string.speaking = other.speaking;
+        string.damperT60 = other.damperT60;
+        string.heardFrom = other.heardFrom;
+        string.heardTo = other.heardTo;
+        for (std::size_t s = 0; s < string.slots.size(); ++s) {
+            Slot& slot = string.slots[s];
+            slot.stop = other.slots[s].stop;
+            for (const Direction direction : {across, into}) {
+                Rail& rail = slot.rails[direction];
+                rail.takeOver(other.slots[s].rails[direction], string.stops[static_cast<std::size_t>(slot.stop)],
+                              samples(takesOver));
+                rail.hold.jump(holdFor(string, rail.loop()));
+            }
+        }
+    }
+    for (std::size_t b = 0; b < bridges.size(); ++b) {
+        bridges[b].bridge.takeOver(before.bridges[b].bridge);
+        bridges[b].peakVelocity = before.bridges[b].peakVelocity;
+        bridges[b].stillUntil = before.bridges[b].stillUntil;
+        // Same size: no allocation.
+        if (bridges[b].heardTo.size() == before.bridges[b].heardTo.size()) {
+            bridges[b].heardFrom = before.bridges[b].heardFrom;
+            bridges[b].heardTo = before.bridges[b].heardTo;
+        }
+    }
+    // Another pan or place is reached as a listener would move there.
+    listeningSettled = before.listeningSettled;
+    setListening(before.listening);
 }
 
 // Playing ------------------------------------------------------------------------------------------------------
@@ -240,13 +298,12 @@ void Engine::Running::setListening(const Listening& wanted) noexcept {
             from[side] += share * (to[side] - from[side]);
         to = next;
     };
-    for (String& string : strings) {
+    for (String& string : strings)
         for (const Direction direction : {across, into}) {
             const double directed = direction == across ? std::cos(wanted.angle) : std::sin(wanted.angle);
             turn(string.heardFrom[direction], string.heardTo[direction],
                  gainsAt(string.position, wanted.spread, directed));
         }
-    }
     for (Driven& driven : bridges)
         for (int i = 0; i < driven.bridge.sources(); ++i) {
             const Bridge::Source& source = driven.bridge.source(i);
@@ -426,6 +483,12 @@ void Engine::Running::restWhatIsOver() noexcept {
             }
     for (Driven& driven : bridges)
         driven.peakVelocity = 0.0;
+    const auto stillTakesOver = [](const String& string) {
+        return std::any_of(string.slots.begin(), string.slots.end(), [](const Slot& slot) {
+            return slot.rails[across].takingOver() || slot.rails[into].takingOver();
+        });
+    };
+    takingOver = takingOver && std::any_of(strings.begin(), strings.end(), stillTakesOver);
 }
 
 // The public face ----------------------------------------------------------------------------------------------
@@ -435,6 +498,15 @@ Engine::Engine(std::shared_ptr<const design::InstrumentDesign> design)
 Engine::~Engine() = default;
 
 void Engine::reset() noexcept { running_->reset(); }
+
+bool Engine::takeOver(Engine& before) noexcept {
+    if (!running_->canTakeOver(*before.running_))
+        return false;
+    running_->takeOver(*before.running_);
+    return true;
+}
+
+bool Engine::takingOver() const noexcept { return running_->takingOver; }
 
 void Engine::pluck(int index, const Pluck& pluck) noexcept {
     Running& r = *running_;

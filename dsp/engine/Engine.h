@@ -41,6 +41,13 @@ public:
     /// At rest, as if new. Keeps design and listening.
     void reset() noexcept;
 
+    /// Goes on from where `before` is, as if its instrument had been changed while it rings: strings, bridges and listening,
+    /// within some hundredths of a second and without a click (Rail.h). `before` is no longer to be called, and must
+    /// live until `takingOver` is false. False, and nothing done, where the two do not have the same strings and stops at the
+    /// same rate, or where either is still taking over.
+    bool takeOver(Engine& before) noexcept;
+    bool takingOver() const noexcept;
+
     /// On a string that rings it adds. The point is kept between 0 and 1; a pluck that is no number is ignored,
     /// as is a string that does not exist, here and below.
     void pluck(int string, const Pluck&) noexcept;

@@ -58,20 +58,56 @@ void Rail::clear() noexcept {
     running_ = false;
     presence.jump(1.0);
     releases.clear();
+    before_ = nullptr;
+}
+
+bool Rail::canTakeOver(const Rail& before) const noexcept {
+    return line_.size() >= static_cast<std::size_t>(before.loop_->delay + longestChunk + 4);
+}
+
+void Rail::takeOver(Rail& before, const RailLoop& loop, int fade) noexcept {
+    speak(loop);
+    if (!before.running_)
+        return;
+    running_ = true;
+    presence = before.presence;
+    for (std::size_t age = 1; age <= std::min(line_.size(), before.line_.size()); ++age)
+        line_[(next_ - age) & mask_] = before.line_[(before.next_ - age) & before.mask_];
+    // A rail that is itself still taking over goes on as what it becomes: its successor waits for that, see Engine.
+    before_ = &before;
+    runningIn_ = static_cast<int>(2.0 * std::max(loop.roundTrip, before.loop_->roundTrip));
+    fade_ = fade;
+    own_.jump(0.0);
+}
+
+void Rail::readLine(double* wave, int count, int delay) const noexcept {
+    std::size_t read = next_ - static_cast<std::size_t>(delay);
+    for (int i = 0; i < count; ++i)
+        wave[i] = line_[read++ & mask_];
 }
 
 void Rail::arrive(double* wave, int count, std::int64_t now) noexcept {
     const RailLoop& loop = *loop_;
-    std::size_t read = next_ - static_cast<std::size_t>(loop.delay);
-    for (int i = 0; i < count; ++i)
-        wave[i] = line_[read++ & mask_];
-
+    readLine(wave, count, loop.delay);
     chain_.run(loop.chain, wave, count);
+    if (before_ != nullptr) {
+        std::array<double, longestChunk> old;
+        readLine(old.data(), count, before_->loop_->delay);
+        before_->chain_.run(before_->loop_->chain, old.data(), count);
+        for (int i = 0; i < count; ++i) {
+            if (runningIn_ > 0 && --runningIn_ == 0)
+                own_.move(1.0, fade_);
+            const double own = own_.next();
+            wave[i] = own * wave[i] + (1.0 - own) * old[static_cast<std::size_t>(i)];
+        }
+    }
     if (!hold.isOne())
         for (int i = 0; i < count; ++i)
             wave[i] *= hold.next();
     if (releases.pending())
         releases.addTo(wave, count, now, loop.plucked);
+    if (before_ != nullptr && before_->releases.pending())
+        before_->releases.addTo(wave, count, now, before_->loop_->plucked);
     if (!presence.isOne())
         for (int i = 0; i < count; ++i)
             wave[i] *= presence.next();
@@ -113,7 +149,7 @@ void Rail::listen(const Place& place, int count) noexcept {
 }
 
 double Rail::sumOfSquares() const noexcept {
-    double sum = chain_.sumOfSquares(loop_->chain);
+    double sum = chain_.sumOfSquares();
     for (int age = 1; age <= loop_->delay; ++age) {
         const double wave = line_[(next_ - static_cast<std::size_t>(age)) & mask_];
         sum += wave * wave;
@@ -126,6 +162,12 @@ void Rail::flush() noexcept {
     listeningSide_.flush();
     listeningLevel_.flush();
     releases.flush(loop_->plucked);
+    if (before_ == nullptr)
+        return;
+    before_->chain_.flush();
+    before_->releases.flush(before_->loop_->plucked);
+    if (own_.isOne() && !before_->releases.pending())
+        before_ = nullptr;
 }
 
 double Rail::left(double age) const noexcept {

@@ -6,6 +6,7 @@
 #include "dsp/engine/Ramp.h"
 #include "dsp/engine/Release.h"
 
+#include <algorithm>
 #include <array>
 #include <cstdint>
 #include <optional>
@@ -29,13 +30,20 @@ struct RailLoop {
 /// Constructing allocates for all loops that the rail will ever run; the rest is real-time safe.
 class Rail {
 public:
-
     explicit Rail(const std::vector<RailLoop>& loops);
 
     /// From now on this loop, at rest.
     void speak(const RailLoop&) noexcept;
     /// Nothing under way any more. A damper that lies on the string stays there.
     void clear() noexcept;
+
+    /// Goes on from where `before` is, as if its string had been changed while it rings. The line holds waves that left the
+    /// bridge, which belong to no design: from it this rail's filters are run in, and then take over within `fade` samples,
+    /// inside the loop. Any mixture of two passive loops is passive. What was being released when it changed is still sent
+    /// by `before`, which must live until `takingOver` is false. False, and nothing done, where the line is too short for it.
+    bool canTakeOver(const Rail& before) const noexcept;
+    void takeOver(Rail& before, const RailLoop&, int fade) noexcept;
+    bool takingOver() const noexcept { return before_ != nullptr; }
 
     bool running() const noexcept { return running_; }
     void wake() noexcept { running_ = true; }
@@ -49,7 +57,9 @@ public:
     /// the bridge is listened to.
     const double* heard() const noexcept { return loop_->listening ? heard_.data() : nullptr; }
 
-    int delay() const noexcept { return loop_->delay; }
+    int delay() const noexcept {
+        return before_ != nullptr ? std::min(loop_->delay, before_->loop_->delay) : loop_->delay;
+    }
     const RailLoop& loop() const noexcept { return *loop_; }
 
     /// A damper that lies on the string: a factor once a round trip.
@@ -73,6 +83,12 @@ private:
     bool running_ = false;
 
     ChainState chain_;
+
+    void readLine(double* wave, int count, int delay) const noexcept;
+    Rail* before_ = nullptr; ///< whose filters still run on this line
+    int runningIn_ = 0;      ///< samples until these filters begin to take over
+    int fade_ = 1;
+    Ramp own_;               ///< how much of what arrives is these filters'
 
     void listen(const Place&, int count) noexcept;
     std::vector<double> arrived_; ///< as far back as any place of listening waits, then the newest chunk

@@ -154,7 +154,7 @@ void Releases::flush(const Place& place) noexcept {
         return;
     // Far below what the loops of the engine call rest.
     constexpr double deadSumOfSquares = 1e-24; // (m/s)²
-    if (side_.sumOfSquares(place.side) + level_.sumOfSquares(place.level) < deadSumOfSquares)
+    if (side_.sumOfSquares() + level_.sumOfSquares() < deadSumOfSquares)
         clear();
 }
 

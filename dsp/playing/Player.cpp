@@ -31,6 +31,22 @@ void Player::reset() noexcept {
         dampUnlessHeld(course);
 }
 
+bool Player::takeOver(Player& before) noexcept {
+    const auto& own = engine_.design().courses;
+    const auto& other = before.engine_.design().courses;
+    const auto alike = [](const design::CourseDesign& a, const design::CourseDesign& b) {
+        return a.key == b.key && a.stringCount == b.stringCount && a.frets == b.frets && a.hasDamper == b.hasDamper;
+    };
+    if (!std::equal(own.begin(), own.end(), other.begin(), other.end(), alike) || !engine_.takeOver(before.engine_))
+        return false;
+    courses_ = before.courses_; // same size: no allocation
+    pedals_ = before.pedals_;
+    takings_ = before.takings_;
+    return true;
+}
+
+bool Player::takingOver() const noexcept { return engine_.takingOver(); }
+
 void Player::setHand(const Hand& hand) noexcept { hand_ = hand; }
 
 void Player::listen(const engine::Listening& listening) noexcept { engine_.listen(listening); }

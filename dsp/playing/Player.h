@@ -74,6 +74,10 @@ public:
     Player(std::shared_ptr<const design::InstrumentDesign>, Rules);
 
     void reset() noexcept;
+    /// Goes on with what `before` plays, keys and pedals included (Engine::takeOver). False, and nothing done, where the two do
+    /// not have the same courses or the strings cannot be taken over.
+    bool takeOver(Player& before) noexcept;
+    bool takingOver() const noexcept;
     void setHand(const Hand&) noexcept;
     void listen(const engine::Listening&) noexcept;
 

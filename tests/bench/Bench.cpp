@@ -6,28 +6,30 @@
 #include "tests/support/YardstickStrings.h"
 
 #include <algorithm>
-#include <chrono>
 #include <cmath>
 #include <cstdio>
+#include <ctime>
+#include <vector>
 
 using namespace hitchpin;
 
 namespace {
 
+/// Of processor time: others use the machine too.
 template <class Work>
 double milliseconds(Work work) {
-    const auto start = std::chrono::steady_clock::now();
+    const std::clock_t start = std::clock();
     work();
-    return std::chrono::duration<double, std::milli>(std::chrono::steady_clock::now() - start).count();
+    return 1e3 * static_cast<double>(std::clock() - start) / CLOCKS_PER_SEC;
 }
 
-/// The best of several, since others use the machine too.
 template <class Work>
-double bestOf(int times, Work work) {
-    double best = milliseconds(work);
-    for (int i = 1; i < times; ++i)
-        best = std::min(best, milliseconds(work));
-    return best;
+double medianOf(int times, Work work) {
+    std::vector<double> all;
+    for (int i = 0; i < times; ++i)
+        all.push_back(milliseconds(work));
+    std::nth_element(all.begin(), all.begin() + times / 2, all.end());
+    return all[static_cast<std::size_t>(times / 2)];
 }
 
 double sumOfSines() {
@@ -41,7 +43,7 @@ double sumOfSines() {
 
 int main() {
     volatile double kept = 0.0;
-    const double unit = bestOf(9, [&] { kept = sumOfSines(); });
+    const double unit = medianOf(9, [&] { kept = sumOfSines(); });
     std::printf("unit: 100000 sines, %.3f ms\n\n", unit);
     std::printf("%-20s %-10s %8s %8s %8s %8s  %2s %7s %9s %8s %7s\n", "string, 48 kHz", "quality", "make ms",
                 "units", "retune", "units", "K", "shelves", "to Hz", "cents", "T60 %");
@@ -55,9 +57,9 @@ int main() {
                 continue;
             }
             const int times = quality == design::Quality::live ? 7 : 3;
-            const double make = bestOf(times, [&] { kept = design::makeLoop(partials, settings)->gain; });
+            const double make = medianOf(times, [&] { kept = design::makeLoop(partials, settings)->gain; });
             const double retune =
-                bestOf(times, [&] { kept = design::retuneLoop(*loop, other, settings)->gain; });
+                medianOf(times, [&] { kept = design::retuneLoop(*loop, other, settings)->gain; });
             std::printf("%-20s %-10s %8.2f %8.1f %8.2f %8.2f  %2zu %7zu %9.0f %8.3f %7.2f\n", string.name,
                         quality == design::Quality::live ? "live" : "reference", make, make / unit, retune,
                         retune / unit, loop->sections.size(), loop->shelves.size(), loop->accuracy.coverageHz,

@@ -22,25 +22,34 @@ struct IdealString {
 
 inline constexpr double idealRate = 48000.0;
 
+/// A string that speaks from one stop with this loop; `roundTrip` in samples.
+inline design::StringDesign stringOf(const design::LoopDesign& loop, double roundTrip, double impedance,
+                                     const string::Ends& ends) {
+    design::SpeakingString open;
+    open.loop = loop;
+    open.speakingLength = 1.0;
+    open.waveSpeed = 2.0 * open.speakingLength * loop.sampleRate / roundTrip;
+    open.tension = impedance * open.waveSpeed;
+    design::StringDesign string;
+    string.impedance = impedance;
+    string.ends = ends;
+    string.stops = {open};
+    return string;
+}
+
 /// A loop that is all delay, so that waves keep their shape and places on the line are places on the string.
 inline design::StringDesign idealString(const IdealString& from, int course) {
-    design::SpeakingString open;
-    open.loop.sampleRate = idealRate;
-    open.loop.turn = from.ends.oneFree() ? -1.0 : 1.0;
+    design::LoopDesign loop;
+    loop.sampleRate = idealRate;
+    loop.turn = from.ends.oneFree() ? -1.0 : 1.0;
     // One round trip is a period, or half of one where one end is free.
-    open.loop.firstPartialHz = idealRate / from.periodSamples * (from.ends.oneFree() ? 0.5 : 1.0);
-    open.loop.delay = from.periodSamples - 1;
-    open.loop.thiran = 0.0; // one sample
-    open.loop.gain = from.gain;
-    open.speakingLength = 1.0;
-    open.waveSpeed = 2.0 * open.speakingLength * idealRate / from.periodSamples;
-    open.tension = from.impedance * open.waveSpeed;
-    design::StringDesign string;
+    loop.firstPartialHz = idealRate / from.periodSamples * (from.ends.oneFree() ? 0.5 : 1.0);
+    loop.delay = from.periodSamples - 1;
+    loop.thiran = 0.0; // one sample
+    loop.gain = from.gain;
+    design::StringDesign string = stringOf(loop, from.periodSamples, from.impedance, from.ends);
     string.course = course;
     string.board = from.board;
-    string.impedance = from.impedance;
-    string.ends = from.ends;
-    string.stops = {open};
     return string;
 }
 

@@ -18,8 +18,17 @@ inline LongComplex responseOf(double gain, int delay, double thiran, const std::
     const LongComplex back = Long(1) / z;
     const auto n = [](double x) { return static_cast<Long>(x); };
     LongComplex value = n(gain) * std::pow(back, delay) * (n(thiran) + back) / (Long(1) + n(thiran) * back);
-    for (const auto& shelf : shelves)
-        value *= (n(shelf.b0) + n(shelf.b1) * back) / (Long(1) + n(shelf.a1) * back);
+    const LongComplex s = (Long(1) - back) / (Long(1) + back);
+    for (const auto& shelf : shelves) {
+        const bool high = shelf.loses == design::LossShelf::Loses::high;
+        const Long w = n(shelf.corner), gamma = std::exp(-n(shelf.depth)), root = std::sqrt(Long(2));
+        if (shelf.order == 1)
+            value *= (high ? w + gamma * s : gamma * w + s) / (w + s);
+        else if (high)
+            value *= (gamma * gamma * s * s + root * gamma * w * s + w * w) / (s * s + root * w * s + w * w);
+        else
+            value *= (s * s + root * gamma * w * s + gamma * gamma * w * w) / (s * s + root * w * s + w * w);
+    }
     for (const auto& section : sections) {
         const Long c0 = n(section.c0), c1 = n(section.c1), scale = 1 + c1 + c0;
         const Long a1 = 2 * (c0 - 1) / scale, a2 = (1 - c1 + c0) / scale;

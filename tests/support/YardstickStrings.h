@@ -27,6 +27,9 @@ struct YardstickString {
 /// Piano: inharmonicity as measured on a grand (fits to recordings of single notes, C8 by trend). Steel,
 /// nylon and brass: from their dimensions, B = π³Ed⁴/(64TL²) (Fletcher 1964). Material losses: steel and
 /// brass δ = 3e-3 and 1/Q = 2e-4 (Valette and Cuesta, from memory), nylon δ = 2e-2 and 4e-4 (Woodhouse 2004).
+/// PVDF: 0.74 mm at 330 mm, density and modulus as data sheets of the polymer give them (1780 kg/m³; 5.5 GPa drawn, as
+/// dsp/string has it), losses between nylon and gut for want of measured ones. Bar-like: a steel rod of 2 mm
+/// (μ = 7850·π/4·d²), so stiff and slack that its partials are nearly those of a hinged bar from n = 5 on (Bn² > 1).
 inline std::vector<YardstickString> strings() {
     //                           f1      B        δ     1/Q    radius    kg/m
     return {{"piano A0", 27.5, 2.4e-4, {3e-3, 3e-4, 2.4e-3, 0.15}},
@@ -40,6 +43,8 @@ inline std::vector<YardstickString> strings() {
             {"nylon C3", 130.8128, 6e-5, {2e-2, 4e-4, 5e-4, 8.4e-4}},
             {"nylon C6", 1046.502, 5e-5, {2e-2, 4e-4, 3e-4, 3e-4}},
             {"brass C3", 130.8128, 1.9e-5, {3e-3, 2e-4, 2.5e-4, 1.669e-3}},
+            {"pvdf C5", 523.2511, 8.0e-5, {2e-2, 3e-4, 3.7e-4, 7.66e-4}},
+            {"bar-like, B 0.05", 200.0, 5e-2, {3e-3, 2e-4, 1e-3, 2.47e-2}},
             {"brass C3, nut free",
              130.8128,
              1.9e-5,

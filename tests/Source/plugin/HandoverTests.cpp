@@ -22,6 +22,8 @@ struct SteadyPlayer {
     double remaining = 1e9; ///< frames until silent
     std::vector<Event> heard = {};
     bool remembers = true;
+    bool takesOver = false; ///< the strings of any player before
+    int yielding = 0;       ///< frames for which the one before is still needed
 
     void process(std::span<const Event> events, double* left, double* right, int frames) {
         if (remembers)
@@ -31,7 +33,17 @@ struct SteadyPlayer {
             if (right != nullptr)
                 right[i] = left[i];
         }
+        yielding = std::max(0, yielding - frames);
     }
+    /// As two players of the same strings would: sound goes on at the other's level for so many frames.
+    bool takeOver(SteadyPlayer& before) {
+        if (!takesOver)
+            return false;
+        yielding = 1000;
+        remaining = before.remaining;
+        return true;
+    }
+    bool takingOver() const { return yielding > 0; }
     void reset() { remaining = 0.0; }
     bool silent() const { return remaining <= 0.0; }
 };
@@ -130,6 +142,32 @@ TEST_CASE("the player before rings on and hears releases and pedals but no new n
     CHECK(newest.heard[0].channel == 3);
     CHECK(newest.heard[1].kind == Event::Kind::noteOn);
     CHECK(newest.heard[1].frame == 2);
+}
+
+// Turned red by: a player before that is still processed, or freed while its strings are being taken over.
+TEST_CASE("a player of the same strings takes them over and keeps the one before until that is done") {
+    REQUIRE(Prepared::alive == 0);
+    {
+        Handover handover;
+        Relay relay(handover);
+        handover.offer(std::make_unique<Prepared>(1, 1.0));
+        REQUIRE(relay.takeNext(any));
+        CHECK(run(relay, 100).back() == 1.0);
+        auto second = std::make_unique<Prepared>(2, 0.5);
+        second->player.takesOver = true;
+        handover.offer(std::move(second));
+        REQUIRE(relay.takeNext(any));
+        CHECK(run(relay, 500).front() == 0.5); // not both
+        handover.offer(std::make_unique<Prepared>(3, 0.25));
+        CHECK_FALSE(relay.takeNext(any)); // no room yet
+        handover.collect();
+        CHECK(Prepared::alive == 3);
+        run(relay, 500);
+        handover.collect();
+        CHECK(Prepared::alive == 2); // the first is gone
+        CHECK(relay.takeNext(any));
+    }
+    CHECK(Prepared::alive == 0);
 }
 
 TEST_CASE("a third player fades the first without a step") {

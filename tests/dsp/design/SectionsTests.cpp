@@ -1,14 +1,19 @@
 #include "dsp/design/Sections.h"
 
+#include "dsp/design/LoopModel.h"
+#include "tests/support/LoopPoles.h"
+
 #include <catch2/catch.hpp>
 
 #include <algorithm>
 #include <cmath>
 #include <complex>
+#include <iostream>
 #include <numbers>
 #include <random>
 
 using namespace hitchpin::design;
+using hitchpin::support::transferOf;
 
 namespace {
 
@@ -80,6 +85,89 @@ TEST_CASE("section, ladder sounds like direct form and keeps its energy to the l
     INFO("worst difference " << worstDifference << ", worst change of energy " << worstEnergy);
     CHECK(worstDifference < 1e-7); // the direct form's own rounding near the circle
     CHECK(worstEnergy < roundingErrors);
+}
+
+namespace {
+
+LossShelf anyShelf(std::mt19937& random, int order) {
+    std::uniform_real_distribution<double> corner(-7.0, 3.0), depth(-9.0, 2.5);
+    return {random() % 2 ? LossShelf::Loses::high : LossShelf::Loses::low, order, std::exp(corner(random)),
+            std::exp(depth(random))};
+}
+
+/// The shelf as LoopDesign.h defines it, at s = j·tan(ω/2).
+std::complex<double> shelfAt(const LossShelf& shelf, double omega) {
+    const auto polynomial = [&](double w, std::complex<double> s) {
+        return shelf.order == 1 ? w + s : w * w + std::numbers::sqrt2 * w * s + s * s;
+    };
+    const std::complex<double> s(0.0, std::tan(0.5 * omega));
+    const double w = shelf.corner, gamma = std::exp(-shelf.depth);
+    return (shelf.loses == LossShelf::Loses::high ? polynomial(w, gamma * s) : polynomial(gamma * w, s)) /
+           polynomial(w, s);
+}
+
+/// Feeds noise and then nothing: the largest growth of y² + |m|² over x² + |m|².
+template <class Step>
+double worstGrowth(std::mt19937& random, Step step) {
+    std::normal_distribution<double> noise;
+    double worst = -1.0, m1 = 0.0, m2 = 0.0;
+    for (int n = 0; n < 400; ++n) {
+        const double x = n < 150 ? noise(random) : 0.0;
+        const double before = x * x + m1 * m1 + m2 * m2, y = step(x, m1, m2);
+        worst = std::max(worst, (y * y + m1 * m1 + m2 * m2 - before) / (1.0 + before));
+    }
+    return worst;
+}
+
+} // namespace
+
+// Turned red by: a wrong sign in A₂₁, a low shelf that is not mirrored.
+TEST_CASE("shelf, forms are the bilinear map of the formula and never make energy", "[design]") {
+    std::mt19937 random(3);
+    double worst = 0.0, growth = -1.0, gain = 0.0;
+    for (int i = 0; i < 400; ++i) {
+        const LossShelf shelf = anyShelf(random, 1), steep = anyShelf(random, 2);
+        const ShelfForm one = shelfForm(shelf);
+        const SteepShelfForm two = steepShelfForm(steep);
+        for (const double omega : {0.001, 0.1, 1.0, 2.0, 3.1}) {
+            const hitchpin::support::LongComplex z = std::polar(1.0L, static_cast<long double>(omega));
+            const std::complex<double> first(transferOf(one, z)), second(transferOf(two, z));
+            worst = std::max({worst, std::abs(first - shelfAt(shelf, omega)), std::abs(second - shelfAt(steep, omega))});
+            gain = std::max({gain, std::abs(first), std::abs(second)});
+        }
+        growth = std::max(growth, worstGrowth(random, [&](double x, double& m, double&) {
+            const double y = one.d * x + one.c * m;
+            m = one.b * x + one.a * m;
+            return y;
+        }));
+        growth = std::max(growth, worstGrowth(random, [&](double x, double& m1, double& m2) {
+            const double y = two.d * x + two.c1 * m1 + two.c2 * m2;
+            const double next = two.b1 * x + two.a11 * m1 + two.a12 * m2;
+            m2 = two.b2 * x + two.a21 * m1 + two.a22 * m2;
+            m1 = next;
+            return y;
+        }));
+    }
+    std::cout << "shelves: worst difference from the formula " << worst << ", largest growth of energy " << growth
+              << ", largest gain 1 + " << gain - 1.0 << "\n";
+    CHECK(worst < 1e-11); // 1 − z and 1 − a cancel where the corner is low
+    CHECK(growth < 1e-14); // a few roundings of numbers near one
+    CHECK(gain <= 1.0 + 1e-11);
+}
+
+TEST_CASE("shelf, second order takes as little below its corner as x to the fourth", "[design]") {
+    // |H|² = (w⁴ + γ⁴x⁴)/(w⁴ + x⁴), so that half the frequency loses a sixteenth (flat to the fourth order: Butterworth
+    // 1930).
+    for (const int order : {1, 2}) {
+        const LossShelf shelf{LossShelf::Loses::high, order, 0.5, 0.8};
+        const ShelfLoss loss(shelf);
+        const double here = loss.at(1e-6).excess, half = loss.at(0.25e-6).excess;
+        CHECK(std::abs(here / half / std::pow(4.0, order) - 1.0) < 1e-4);
+        CHECK(std::abs(0.5 * std::log1p(loss.at(1e12).excess) - order * shelf.depth) < 1e-9); // all of it far above
+        for (const double omega : {0.1, 0.5, 1.0, 2.0})
+            CHECK(std::abs(0.5 * std::log1p(loss.at(std::pow(std::tan(0.5 * omega), 2)).excess) +
+                           std::log(std::abs(shelfAt(shelf, omega)))) < 1e-14);
+    }
 }
 
 TEST_CASE("thiran, coefficient and delay", "[design]") {

@@ -15,8 +15,8 @@ using support::RealString;
 
 namespace {
 
-/// The project's promise for every string; a hundredth of what the best ears tell apart.
-constexpr double pitchTolerance = 0.05; // cents
+/// The project's promise for every string, far under what the best ears tell apart.
+constexpr double pitchTolerance = 0.01; // cents
 
 double heardAgainstSchedule(const design::InstrumentDescription& described, double sampleRate) {
     auto made = design::makeInstrument(described, {sampleRate, design::Quality::live});
