@@ -31,9 +31,9 @@ constexpr double mostCents = 0.05, mostDecay = 0.01, surely = 30.0;
 juce::String column(double value, int decimals, int width) { return juce::String(value, decimals).paddedLeft(' ', width); }
 
 std::string whose(const design::InstrumentDescription& instrument, const design::InstrumentDesign& design,
-                  const design::CoupledPole& pole, const board::Bridge& bridge) {
+                  const design::CoupledPole& pole, const board::Board& board) {
     if (pole.string < 0)
-        return "board " + juce::String(bridge.modes[static_cast<std::size_t>(pole.partial)].frequency, 0).toStdString() + " Hz";
+        return "board " + juce::String(board.modes[static_cast<std::size_t>(pole.partial)].frequency, 0).toStdString() + " Hz";
     const auto course = static_cast<std::size_t>(design.strings[static_cast<std::size_t>(pole.string)].course);
     return instrument.courses[course].name + " partial " + std::to_string(pole.partial);
 }
@@ -43,13 +43,13 @@ struct Tally {
     double worstCents = 0.0, worstDecay = 0.0, worstUnexplained = -400.0;
 };
 
-/// What sounds after all strings of the bridge were plucked, from where the plucks have ended.
-std::vector<double> soundOf(const std::shared_ptr<const design::InstrumentDesign>& design, int bridge) {
+/// What sounds after all strings of the board were plucked, from where the plucks have ended.
+std::vector<double> soundOf(const std::shared_ptr<const design::InstrumentDesign>& design, int board) {
     engine::Engine engine(design);
     double longest = 0.0;
     for (std::size_t i = 0; i < design->strings.size(); ++i) {
         const auto& string = design->strings[i];
-        if (string.bridge != bridge)
+        if (string.board != board)
             continue;
         engine.pluck(static_cast<int>(i), {1.0, pluckedAt, 0.0, 0.5 + angleStep * static_cast<double>(i)});
         longest = std::max(longest, 1.0 / string.stops.front().loop.firstPartialHz);
@@ -62,12 +62,22 @@ std::vector<double> soundOf(const std::shared_ptr<const design::InstrumentDesign
     return sound;
 }
 
-void printBridge(const design::InstrumentDescription& instrument, const std::shared_ptr<const design::InstrumentDesign>& design,
-                 int bridge, Tally& tally) {
-    const auto& board = instrument.bridges[static_cast<std::size_t>(bridge)];
+/// bridge "one"; or with several on the board: bridges "one", "other" on one board
+std::string bridgesOf(const design::InstrumentDescription& instrument, int board) {
+    std::string names;
+    int count = 0;
+    for (const auto& bridge : instrument.bridges)
+        if (bridge.board == board)
+            names += (count++ > 0 ? ", \"" : "\"") + bridge.name + "\"";
+    return count > 1 ? "bridges " + names + " on one board" : "bridge " + names;
+}
+
+void printBoard(const design::InstrumentDescription& instrument, const std::shared_ptr<const design::InstrumentDesign>& design,
+                int index, Tally& tally) {
+    const auto& board = instrument.boards[static_cast<std::size_t>(index)];
     const auto coupled = [&] {
         LongWork work("finding the partials");
-        return design::coupledPoles(*design, bridge, highestHz + beyondHz, [&](double share) { return work.goOn(share); });
+        return design::coupledPoles(*design, index, highestHz + beyondHz, [&](double share) { return work.goOn(share); });
     }();
     if (LongWork::interrupted())
         return;
@@ -76,9 +86,9 @@ void printBridge(const design::InstrumentDescription& instrument, const std::sha
     for (const auto& pole : coupled.poles)
         if (!pole.still)
             moving.push_back({pole.frequency, pole.decayRate});
-    const auto checked = analysis::checkPoles(soundOf(design, bridge), sampleRate, moving);
+    const auto checked = analysis::checkPoles(soundOf(design, index), sampleRate, moving);
 
-    std::cout << "bridge \"" << board.name << "\"\n"
+    std::cout << bridgesOf(instrument, index) << "\n"
               << "    predicted      measured      off   ring time T60, s     band\n"
               << "           Hz            Hz     cent  predicted   measured  left, dB  of\n";
     std::size_t next = 0;
@@ -91,7 +101,7 @@ void printBridge(const design::InstrumentDescription& instrument, const std::sha
         const auto t60 = column(std::log(1000.0) / pole.decayRate, 3, 11);
         if (pole.still) {
             ++tally.still;
-            std::cout << "     against each other " << t60 << "  the bridge stays still  " << name << "\n";
+            std::cout << "     against each other " << t60 << "  the board stays still  " << name << "\n";
             continue;
         }
         const auto& found = checked[next++];
@@ -132,12 +142,11 @@ Exit printAllPartials(design::InstrumentDescription instrument, design::Quality 
         return failed;
     }
     Tally tally;
-    for (std::size_t b = 0; b < instrument.bridges.size(); ++b) {
-        const auto& bridge = instrument.bridges[b];
-        if (bridge.kind == board::BridgeKind::rigid)
-            std::cout << "bridge \"" << bridge.name << "\" is rigid: its strings sound alone (partials FILE --note N)\n\n";
+    for (int b = 0; b < std::ssize(instrument.boards); ++b) {
+        if (instrument.boards[static_cast<std::size_t>(b)].kind == board::BridgeKind::rigid)
+            std::cout << bridgesOf(instrument, b) << " is rigid: its strings sound alone (partials FILE --note N)\n\n";
         else
-            printBridge(instrument, *design, static_cast<int>(b), tally);
+            printBoard(instrument, *design, b, tally);
         if (LongWork::interrupted()) {
             say("stopped");
             return failed;
@@ -148,7 +157,7 @@ Exit printAllPartials(design::InstrumentDescription instrument, design::Quality 
               << tally.measured << " measured each by itself: worst " << juce::String(tally.worstCents, 4) << " cent (allowed "
               << mostCents << "), ring time " << juce::String(100.0 * tally.worstDecay, 2) << " % (allowed " << 100.0 * mostDecay
               << "); " << tally.tooNear << " too near others or too weak for that; " << tally.still
-              << " leave the bridge still; " << tally.notSettled << " not found.\n";
+              << " leave the board still; " << tally.notSettled << " not found.\n";
     return tally.off == 0 && tally.notSettled == 0 ? well : failed;
 }
 

@@ -35,6 +35,7 @@ const design::CourseDescription* courseFor(const design::InstrumentDescription& 
 /// That string alone on a rigid bridge.
 design::InstrumentDescription alone(const design::CourseDescription& course, string::Strung string) {
     design::InstrumentDescription instrument;
+    instrument.boards.emplace_back();
     instrument.bridges.emplace_back();
     design::CourseDescription one;
     one.name = course.name;

@@ -104,24 +104,33 @@ private:
         auto all = instrument_.bridges;
         if (all.empty())
             all.emplace_back();
+        auto& instrument = described_.instrument;
         for (const auto& from : all) {
-            board::Bridge to;
-            to.name = from.name;
-            to.kind = static_cast<board::BridgeKind>(from.kind);
-            to.points = from.points;
-            to.resistance = from.kind == BridgeKind::rigid ? 0.0 : from.resistanceKgS;
-            for (const auto& mode : from.modes)
-                to.modes.push_back({mode.frequencyHz, mode.q, mode.massKg, radians(mode.angleDeg),
-                                    mode.shape.empty() ? std::vector<double>(static_cast<std::size_t>(from.points), 1.0)
-                                                       : mode.shape,
-                                    mode.pan});
-            described_.instrument.bridges.push_back(std::move(to));
+            int board = static_cast<int>(instrument.boards.size());
+            if (from.board.empty()) {
+                auto& own = instrument.boards.emplace_back();
+                own.kind = static_cast<board::BridgeKind>(from.kind);
+                for (const auto& mode : from.modes)
+                    own.modes.push_back({mode.frequencyHz, mode.q, mode.massKg, radians(mode.angleDeg), mode.shape, mode.pan});
+            } else {
+                board = instrument.bridges[static_cast<std::size_t>(bridgeNamed(from.board))].board;
+            }
+            if (from.kind == BridgeKind::rigid)
+                instrument.bridges.push_back({from.name, board});
+            else
+                instrument.bridges.push_back(board::addBridge(from.name, board, instrument.boards[static_cast<std::size_t>(board)],
+                                                              from.points, from.resistanceKgS));
         }
+        for (auto& board : instrument.boards)
+            for (auto& mode : board.modes)
+                if (mode.shape.empty())
+                    mode.shape.assign(board.points.size(), 1.0);
     }
 
-    int bridgeOf(const Course& course) const {
+    /// The first where there is none of that name.
+    int bridgeNamed(const std::string& name) const {
         const auto& all = described_.instrument.bridges;
-        const auto found = std::find_if(all.begin(), all.end(), [&](const auto& b) { return b.name == course.bridge; });
+        const auto found = std::find_if(all.begin(), all.end(), [&](const auto& b) { return b.name == name; });
         return found == all.end() ? 0 : static_cast<int>(found - all.begin());
     }
 
@@ -150,13 +159,13 @@ private:
     std::vector<Placed> strungCourses() {
         std::vector<int> ofBridge(described_.instrument.bridges.size(), 0);
         for (const auto& course : instrument_.courses)
-            ++ofBridge[static_cast<std::size_t>(bridgeOf(course))];
+            ++ofBridge[static_cast<std::size_t>(bridgeNamed(course.bridge))];
         std::vector<int> placed(ofBridge.size(), 0);
         std::vector<Placed> all;
         for (std::size_t i = 0; i < instrument_.courses.size(); ++i) {
             const auto& course = instrument_.courses[i];
             const auto path = "courses[" + std::to_string(i) + "]";
-            const int bridge = bridgeOf(course);
+            const int bridge = bridgeNamed(course.bridge);
             const auto b = static_cast<std::size_t>(bridge);
             const double evenly = (placed[b]++ + 0.5) / ofBridge[b];
             int key = 0;
@@ -248,7 +257,7 @@ private:
     void tuneOnTheBoard(const std::vector<Placed>& placed) {
         const auto alone = described_.instrument;
         for (std::size_t c = 0; c < placed.size(); ++c) {
-            if (alone.bridges[static_cast<std::size_t>(placed[c].bridge)].kind == board::BridgeKind::rigid)
+            if (design::boardOf(alone, alone.courses[c]).kind == board::BridgeKind::rigid)
                 continue;
             auto& strings = described_.instrument.courses[c].strings;
             for (std::size_t s = 0; s < strings.size(); ++s) {

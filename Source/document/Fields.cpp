@@ -168,10 +168,10 @@ template <> const Table<BoardMode>& table<BoardMode>() {
         "mode",
         {field("frequency_hz", &R::frequencyHz, number("Hz", over(0, 50000)), "Where the soundboard resonates.").require(),
          field("q", &R::q, number("", over(0, 100000)), "How sharply.").require(),
-         field("mass_kg", &R::massKg, number("kg", over(0, 10000)), "Effective mass at the bridge.").require(),
+         field("mass_kg", &R::massKg, number("kg", over(0, 10000)), "Effective mass where its shape is 1.").require(),
          field("angle_deg", &R::angleDeg, number("degrees", from(-180, 180)),
                "Direction of its motion, from across (0) towards into (90)."),
-         field("shape", &R::shape, list("", from(-1000, 1000), 0, 256), "Its motion at each of the bridge's points."),
+         field("shape", &R::shape, list("", from(-1000, 1000), 0, 256), "Its motion at each point of the bridges on its board, in the file's order."),
          field("pan", &R::pan, number("", from(-1, 1)), "Where it is heard, from left (-1) to right (1).")}};
     return all;
 }
@@ -182,10 +182,12 @@ template <> const Table<Bridge>& table<Bridge>() {
         "bridge",
         {field("name", &R::name, anything, "By which courses refer to it."),
          field("kind", &R::kind, anything, "What the strings drive."),
+         field("board", &R::board, anything, "Name of an earlier bridge on whose soundboard it stands.")
+             .ifAbsent("a board of its own"),
          field("points", &R::points, count(1, 256), "Places along it that move for themselves."),
          field("resistance_kg_s", &R::resistanceKgS, number("kg/s", over(0, 1e9)),
-               "Of a resistance, or what a soundboard's modes leave over."),
-         field("modes", &R::modes, entries(0, 1000), "The soundboard's modes.")}};
+               "Of a resistance, or what a soundboard's modes leave over, at each point."),
+         field("modes", &R::modes, entries(0, 1000), "The soundboard's modes, given by the bridge whose board it is.")}};
     return all;
 }
 

@@ -116,7 +116,7 @@ struct BoardMode {
     double q = 0.0;
     double massKg = 0.0;
     double angleDeg = 90.0; ///< from across towards into
-    std::vector<double> shape; ///< a value for each of the bridge's points; empty: 1 at each
+    std::vector<double> shape; ///< a value for each point of the board; empty: 1 at each
     double pan = 0.0;
     Given given;
     bool operator==(const BoardMode&) const = default;
@@ -125,6 +125,7 @@ struct BoardMode {
 struct Bridge {
     std::string name = "main";
     BridgeKind kind = BridgeKind::rigid;
+    std::string board;        ///< the bridge whose soundboard this one stands on; empty: it has its own
     int points = 1;
     double resistanceKgS = 1000.0;
     std::vector<BoardMode> modes;

@@ -16,6 +16,9 @@ std::string quoted(const std::string& text) {
     return jsonLine(juce::String::fromUTF8(text.data(), static_cast<int>(text.size()))).toStdString();
 }
 
+/// On one board; as many as a bridge alone may have.
+constexpr int mostPoints = 256;
+
 std::string indexed(const std::string& name, std::size_t index) { return name + "[" + std::to_string(index) + "]"; }
 
 class Rules {
@@ -105,12 +108,49 @@ private:
             }
         if (bridge.kind != BridgeKind::soundboard && !bridge.modes.empty())
             add(path + ".modes", " belong to a bridge of kind \"soundboard\"");
+        if (!bridge.board.empty())
+            onBoardOf(path, index);
+        else
+            ownBoard(path, bridge);
+    }
+
+    void onBoardOf(const std::string& path, std::size_t index) {
+        const auto& all = instrument_.bridges;
+        const auto& bridge = all[index];
+        if (bridge.kind != BridgeKind::soundboard)
+            add(path + ".board", " belongs to a bridge of kind \"soundboard\"");
+        if (!bridge.modes.empty())
+            add(path + ".modes", " belong to the bridge whose board it is, " + quoted(bridge.board));
+        const auto said = " = " + quoted(bridge.board) + ": ";
+        const auto owner = std::find_if(all.begin(), all.end(), [&](const auto& b) { return b.name == bridge.board; });
+        const auto name = indexed("bridges", static_cast<std::size_t>(owner - all.begin()));
+        if (owner == all.end())
+            add(path + ".board", said + "no such bridge; known are " + listed(bridges_));
+        else if (owner >= all.begin() + static_cast<std::ptrdiff_t>(index))
+            add(path + ".board", said + "must be a bridge before this one");
+        else if (!owner->board.empty())
+            add(path + ".board", said + name + " stands on the board of " + quoted(owner->board) + " itself: name that");
+        else if (owner->kind != BridgeKind::soundboard)
+            add(path + ".board", said + name + " has no soundboard");
+    }
+
+    void ownBoard(const std::string& path, const Bridge& bridge) {
+        int points = bridge.points;
+        bool alone = true;
+        for (const auto& other : instrument_.bridges)
+            if (!other.board.empty() && other.board == bridge.name) {
+                points += other.points;
+                alone = false;
+            }
+        if (points > mostPoints)
+            add(path, ": its board has " + std::to_string(points) + " points, those of all bridges on it: must be at most " +
+                          std::to_string(mostPoints));
         for (std::size_t m = 0; m < bridge.modes.size(); ++m) {
             const auto shape = bridge.modes[m].shape.size();
-            if (shape != 0 && shape != static_cast<std::size_t>(bridge.points))
+            if (shape != 0 && shape != static_cast<std::size_t>(points))
                 add(path + indexed(".modes", m) + ".shape",
-                    " has " + std::to_string(shape) + " entries: must have one for each of the bridge's points, " +
-                        std::to_string(bridge.points));
+                    " has " + std::to_string(shape) + " entries: must have one for each " +
+                        (alone ? "of the bridge's points, " : "point of the bridges on its board, ") + std::to_string(points));
         }
     }
 

@@ -32,7 +32,7 @@ std::string windingsInWords(const std::vector<string::Winding>& windings) {
 /// What pulls, and by how much: the mode that lies nearest.
 std::string wolfInWords(const design::InstrumentDescription& described, const design::CourseDescription& course,
                         const board::PartialOnBoard& onBoard) {
-    const auto& modes = described.bridges[static_cast<std::size_t>(course.bridge)].modes;
+    const auto& modes = design::boardOf(described, course).modes;
     const double hz = course.strings.front().partials.frequency(1);
     const auto nearest = std::min_element(modes.begin(), modes.end(), [&](const auto& a, const auto& b) {
         return std::abs(std::log(a.frequency / hz)) < std::abs(std::log(b.frequency / hz));

@@ -35,7 +35,7 @@ struct ScheduleRow {
     double longitudinalHz = 0.0;
     std::vector<double> partialsHz;
     std::vector<double> decayT60S; ///< the string alone
-    std::vector<double> boardT60S; ///< on its bridge, the others there at rest
+    std::vector<double> boardT60S; ///< on its board, the others there at rest
     double boardShiftCents = 0.0;  ///< by which the bridge moves the first partial
     std::vector<std::string> warnings;
 };

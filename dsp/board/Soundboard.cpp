@@ -21,12 +21,19 @@ void addWeights(std::vector<double>& weights, const Sharing& place) {
 
 } // namespace
 
-Sharing sharing(double position, int points) noexcept {
-    if (points <= 1)
-        return {};
-    const double along = std::clamp(position, 0.0, 1.0) * (points - 1);
-    const int first = std::min(static_cast<int>(along), points - 2);
-    return {first, 1.0 - (along - first), along - first};
+Bridge addBridge(std::string name, int boardIndex, Board& board, int points, double resistance) {
+    Bridge bridge{std::move(name), boardIndex, static_cast<int>(board.points.size()), points};
+    for (int p = 0; p < points; ++p)
+        board.points.push_back({resistance, points > 1 ? static_cast<double>(p) / (points - 1) : 0.5});
+    return bridge;
+}
+
+Sharing sharing(const Bridge& bridge, double position) noexcept {
+    if (bridge.points <= 1)
+        return {bridge.firstPoint};
+    const double along = std::clamp(position, 0.0, 1.0) * (bridge.points - 1);
+    const int below = std::min(static_cast<int>(along), bridge.points - 2);
+    return {bridge.firstPoint + below, 1.0 - (along - below), along - below};
 }
 
 double shapeAt(const Mode& mode, const Sharing& place) noexcept {
@@ -35,16 +42,17 @@ double shapeAt(const Mode& mode, const Sharing& place) noexcept {
     return place.ofFirst * mode.shape[first] + second;
 }
 
-MobilityAt::MobilityAt(const Bridge& bridge, double position, const std::vector<Resting>& others) {
-    // A rigid bridge has nothing that moves.
-    if (bridge.kind == BridgeKind::rigid)
+MobilityAt::MobilityAt(const Board& board, const Sharing& place, const std::vector<Resting>& others) {
+    // A rigid one has nothing that moves.
+    if (board.kind == BridgeKind::rigid)
         return;
-    const auto points = static_cast<std::size_t>(std::max(1, bridge.points));
+    const auto points = board.points.size();
     here_.assign(points, 0.0);
-    addWeights(here_, sharing(position, bridge.points));
+    addWeights(here_, place);
     remainder_.assign(2 * points, 0.0);
-    std::fill(remainder_.begin() + static_cast<std::ptrdiff_t>(points), remainder_.end(), 1.0 / bridge.resistance);
-    for (const Mode& mode : bridge.modes) {
+    for (std::size_t p = 0; p < points; ++p)
+        remainder_[points + p] = 1.0 / board.points[p].resistance;
+    for (const Mode& mode : board.modes) {
         Part part{2.0 * std::numbers::pi * mode.frequency, mode.q, mode.mass, std::vector<double>(2 * points)};
         for (std::size_t p = 0; p < points; ++p) {
             part.motion[p] = mode.shape[p] * std::cos(mode.angle);
@@ -55,7 +63,7 @@ MobilityAt::MobilityAt(const Bridge& bridge, double position, const std::vector<
     load_.assign(4 * points * points, 0.0);
     for (const Resting& other : others) {
         std::vector<double> weights(points, 0.0);
-        addWeights(weights, sharing(other.position, bridge.points));
+        addWeights(weights, other.place);
         for (std::size_t p = 0; p < points; ++p)
             for (std::size_t q = 0; q < points; ++q)
                 for (const std::size_t direction : {std::size_t{0}, points})
@@ -64,7 +72,7 @@ MobilityAt::MobilityAt(const Bridge& bridge, double position, const std::vector<
     }
 }
 
-/// On the stack where the bridge has few points, as bridges have.
+/// On the stack where the board has few points, as boards have.
 template <class Matrix>
 Mobility MobilityAt::loaded(Complex s) const {
     const auto size = static_cast<Eigen::Index>(remainder_.size()), points = size / 2;

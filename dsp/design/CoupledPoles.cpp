@@ -30,7 +30,7 @@ struct Alike {
     int count = 1;
     double turn = 1.0;
     LoopModel loop;
-    Eigen::VectorXd weights; ///< over the bridge's points
+    Eigen::VectorXd weights; ///< over the board's points
     double impedance = 0.0;  ///< of all together
 };
 
@@ -42,24 +42,24 @@ bool sameLoop(const LoopDesign& a, const LoopDesign& b) {
 
 class Equation {
 public:
-    Equation(const InstrumentDesign& design, int bridge) {
-        const BridgeDesign& from = design.bridges[static_cast<std::size_t>(bridge)];
-        points_ = from.points;
+    Equation(const InstrumentDesign& design, int board) {
+        const BoardDesign& from = design.boards[static_cast<std::size_t>(board)];
+        points_ = std::ssize(from.points);
         for (std::size_t i = 0; i < design.strings.size(); ++i) {
             const StringDesign& string = design.strings[i];
-            if (string.bridge != bridge || string.ends.bridge == string::End::free)
+            if (string.board != board || string.ends.bridge == string::End::free)
                 continue;
             const LoopDesign& loop = string.stops.front().loop;
             const auto twin = std::find_if(strings_.begin(), strings_.end(), [&](const Alike& other) {
                 const StringDesign& first = design.strings[static_cast<std::size_t>(other.first)];
-                return first.bridgePosition == string.bridgePosition && sameLoop(first.stops.front().loop, loop);
+                return first.place == string.place && sameLoop(first.stops.front().loop, loop);
             });
             if (twin != strings_.end()) {
                 ++twin->count;
                 twin->impedance += string.impedance;
                 continue;
             }
-            const board::Sharing place = board::sharing(string.bridgePosition, points_);
+            const board::Sharing& place = string.place;
             Eigen::VectorXd weights = Eigen::VectorXd::Zero(points_);
             weights[place.first] = place.ofFirst;
             if (place.ofSecond != 0.0)
@@ -82,7 +82,8 @@ public:
                 modes_[m].motion = std::sin(mode.angle) * shape;
         }
         remainder_ = Eigen::VectorXd::Zero(size);
-        remainder_.tail(points_).setConstant(1.0 / from.resistance);
+        for (Eigen::Index p = 0; p < points_; ++p)
+            remainder_[size - points_ + p] = 1.0 / from.points[static_cast<std::size_t>(p)].resistance;
     }
 
     const std::vector<Alike>& strings() const { return strings_; }
@@ -164,7 +165,7 @@ private:
         return y;
     }
 
-    int points_ = 1;
+    Eigen::Index points_ = 1;
     bool movesAcross_ = false;
     std::vector<Alike> strings_;
     std::vector<Moving> modes_;
@@ -269,8 +270,8 @@ std::vector<Complex> ownPoles(const Alike& string, const LoopDesign& design, dou
 
 } // namespace
 
-CoupledPoles coupledPoles(const InstrumentDesign& design, int bridge, double highestHz, const Progress& progress) {
-    const Equation equation(design, bridge);
+CoupledPoles coupledPoles(const InstrumentDesign& design, int board, double highestHz, const Progress& progress) {
+    const Equation equation(design, board);
     const double perSample = 2.0 * pi / design.sampleRate;
     // A little further, so that roots at the border have their neighbours.
     const double highest = std::min(1.05 * highestHz, 0.45 * design.sampleRate) * perSample;

@@ -25,12 +25,16 @@ struct CourseDescription {
 
 struct InstrumentDescription {
     std::string name;
+    std::vector<board::Board> boards;
     std::vector<board::Bridge> bridges;
     std::vector<CourseDescription> courses;
 };
 
-/// The bridge as one string meets it: all the other strings there at rest. None moves where the bridge is rigid or the
-/// string's end at it free.
+/// The board that a course's bridge stands on.
+const board::Board& boardOf(const InstrumentDescription&, const CourseDescription&);
+
+/// The board as one string meets it: all the other strings there at rest. None moves where it is rigid or the string's
+/// end at it free.
 board::MobilityAt mobilityFor(const InstrumentDescription&, std::size_t course, std::size_t string);
 
 } // namespace hitchpin::design

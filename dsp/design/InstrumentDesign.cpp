@@ -42,16 +42,27 @@ SpeakingString speaking(const string::Strung& strung, LoopDesign loop, const Cou
 std::string problemWith(const InstrumentDescription& description) {
     if (description.courses.empty())
         return "the instrument has no courses";
+    for (std::size_t i = 0; i < description.boards.size(); ++i) {
+        const board::Board& board = description.boards[i];
+        if (board.kind != board::BridgeKind::rigid && board.points.empty())
+            return "boards[" + std::to_string(i) + "]: has no points";
+        for (const board::Point& point : board.points)
+            if (!(point.resistance > 0.0 && std::isfinite(point.resistance)))
+                return "boards[" + std::to_string(i) + "]: its resistance must be over 0 kg/s at each point";
+        for (const board::Mode& mode : board.modes)
+            if (!(mode.frequency > 0.0 && mode.q > 0.0 && mode.mass > 0.0) || mode.shape.size() != board.points.size())
+                return "boards[" + std::to_string(i) +
+                       "]: a mode needs a frequency, a Q and a mass over 0 and its shape at each point";
+    }
     for (std::size_t i = 0; i < description.bridges.size(); ++i) {
         const board::Bridge& bridge = description.bridges[i];
-        if (bridge.kind != board::BridgeKind::rigid &&
-            !(bridge.resistance > 0.0 && std::isfinite(bridge.resistance)))
-            return "bridges[" + std::to_string(i) + "]: its resistance must be over 0 kg/s";
-        for (const board::Mode& mode : bridge.modes)
-            if (!(mode.frequency > 0.0 && mode.q > 0.0 && mode.mass > 0.0) ||
-                mode.shape.size() != static_cast<std::size_t>(std::max(1, bridge.points)))
-                return "bridges[" + std::to_string(i) +
-                       "]: a mode needs a frequency, a Q and a mass over 0 and its shape at each point";
+        if (bridge.board < 0 || bridge.board >= static_cast<int>(description.boards.size()))
+            return "bridges[" + std::to_string(i) + "]: stands on a board that the instrument does not have";
+        const board::Board& board = description.boards[static_cast<std::size_t>(bridge.board)];
+        if (board.kind != board::BridgeKind::rigid &&
+            (bridge.points < 1 || bridge.firstPoint < 0 ||
+             bridge.firstPoint > static_cast<int>(board.points.size()) - bridge.points))
+            return "bridges[" + std::to_string(i) + "]: stands on points that its board does not have";
     }
     for (std::size_t i = 0; i < description.courses.size(); ++i) {
         const CourseDescription& course = description.courses[i];
@@ -65,35 +76,41 @@ std::string problemWith(const InstrumentDescription& description) {
     return {};
 }
 
-/// Root mean square of the mobility into the board, without strings, over a logarithmic scale of what is heard best.
-double meanMobility(const board::Bridge& bridge) {
+/// Root mean square of the mobility into the board at its points, without strings, over a logarithmic scale of what is
+/// heard best.
+double meanMobility(const board::Board& board) {
     constexpr double lowest = 80.0, highest = 5000.0; // Hz
-    constexpr int points = 400;
-    const board::MobilityAt mobility(bridge, 0.5);
+    constexpr int steps = 400;
     double sum = 0.0;
-    for (int i = 0; i < points; ++i) {
-        const double hz = lowest * std::pow(highest / lowest, (i + 0.5) / points);
-        sum += std::norm(mobility({0.0, 2.0 * std::numbers::pi * hz}).into);
+    for (std::size_t p = 0; p < board.points.size(); ++p) {
+        // Without strings the other points do not matter.
+        board::Board point{board.kind, {board.points[p]}, board.modes};
+        for (board::Mode& mode : point.modes)
+            mode.shape = {mode.shape[p]};
+        const board::MobilityAt mobility(point, {});
+        for (int i = 0; i < steps; ++i) {
+            const double hz = lowest * std::pow(highest / lowest, (i + 0.5) / steps);
+            sum += std::norm(mobility({0.0, 2.0 * std::numbers::pi * hz}).into);
+        }
     }
-    return std::sqrt(sum / points);
+    return std::sqrt(sum / (steps * static_cast<double>(board.points.size())));
 }
 
 } // namespace
 
-BridgeDesign bridgeDesign(const board::Bridge& from, double sampleRate) {
-    BridgeDesign bridge;
-    bridge.kind = from.kind;
+BoardDesign boardDesign(const board::Board& from, double sampleRate) {
+    BoardDesign board;
+    board.kind = from.kind;
     if (from.kind == board::BridgeKind::rigid)
-        return bridge;
-    bridge.resistance = from.resistance;
-    bridge.points = std::max(1, from.points);
+        return board;
+    board.points = from.points;
     if (from.kind == board::BridgeKind::soundboard) {
         for (const board::Mode& mode : from.modes)
             if (mode.frequency <= highestModeShareOfRate * sampleRate)
-                bridge.modes.push_back(mode);
-        bridge.heard = 1.0 / meanMobility(from);
+                board.modes.push_back(mode);
+        board.heard = 1.0 / meanMobility(from);
     }
-    return bridge;
+    return board;
 }
 
 Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentDescription& description,
@@ -104,8 +121,8 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
 
     auto design = std::make_shared<InstrumentDesign>();
     design->sampleRate = settings.sampleRate;
-    for (const board::Bridge& bridge : description.bridges)
-        design->bridges.push_back(bridgeDesign(bridge, settings.sampleRate));
+    for (const board::Board& board : description.boards)
+        design->boards.push_back(boardDesign(board, settings.sampleRate));
 
     std::size_t loops = 0, loopsDone = 0;
     for (const CourseDescription& course : description.courses)
@@ -120,7 +137,9 @@ Result<std::shared_ptr<const InstrumentDesign>> makeInstrument(const InstrumentD
             const string::Strung& open = course.strings[s];
             StringDesign string;
             string.course = static_cast<int>(c);
-            string.bridge = course.bridge;
+            const board::Bridge& bridge = description.bridges[static_cast<std::size_t>(course.bridge)];
+            string.board = bridge.board;
+            string.place = board::sharing(bridge, course.bridgePosition);
             string.bridgePosition = course.bridgePosition;
             string.impedance = open.statics.impedance;
             string.ends = open.description.ends;

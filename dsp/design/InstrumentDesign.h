@@ -27,8 +27,9 @@ struct SpeakingString {
 
 struct StringDesign {
     int course = 0;
-    int bridge = 0;
-    double bridgePosition = 0.5;
+    int board = 0;
+    board::Sharing place;        ///< on the board
+    double bridgePosition = 0.5; ///< along its bridge
     double impedance = 0.0;      ///< Z0, kg/s
     string::Ends ends;
     std::vector<SpeakingString> stops; ///< [0] open, [k] at fret k
@@ -43,21 +44,20 @@ struct CourseDesign {
     int frets = 0;
 };
 
-struct BridgeDesign {
+struct BoardDesign {
     board::BridgeKind kind = board::BridgeKind::rigid;
-    double resistance = 0.0;     ///< kg/s; unused where rigid
-    int points = 1;
+    std::vector<board::Point> points{}; ///< none where rigid
     std::vector<board::Mode> modes{}; ///< those that the sample rate can hold
     /// N per m/s: a soundboard is heard by its motion, as the force that would move its mean mobility alike.
     double heard = 0.0;
 };
 
-/// The bridge at a sample rate, its mean mobility worked out.
-BridgeDesign bridgeDesign(const board::Bridge&, double sampleRate);
+/// The board at a sample rate, its mean mobility worked out.
+BoardDesign boardDesign(const board::Board&, double sampleRate);
 
 struct InstrumentDesign {
     double sampleRate = 0.0;
-    std::vector<BridgeDesign> bridges;
+    std::vector<BoardDesign> boards;
     std::vector<CourseDesign> courses;
     std::vector<StringDesign> strings;
     double longestT60 = 0.0;     ///< s, of the strings alone

@@ -13,8 +13,8 @@ constexpr double leastPart = 1e-9;
 
 } // namespace
 
-Bridge::Bridge(const design::BridgeDesign& design, double sampleRate)
-    : points_(std::max(1, design.points)), heardPerVelocity_(design.heard), resistance_(design.resistance) {
+Bridge::Bridge(const design::BoardDesign& design, double sampleRate)
+    : points_(static_cast<int>(design.points.size())), heardPerVelocity_(design.heard) {
     if (design.kind == board::BridgeKind::rigid) {
         heardPerVelocity_ = 0.0;
         return;
@@ -36,13 +36,16 @@ Bridge::Bridge(const design::BridgeDesign& design, double sampleRate)
         }
         sources_.push_back({mode.angle, 0.5 + 0.5 * mode.pan});
     }
-    for (std::size_t p = 0; p < points && heardByBoard(); ++p)
-        sources_.push_back({0.5 * std::numbers::pi, points > 1 ? static_cast<double>(p) / (points_ - 1) : 0.5});
+    for (const board::Point& point : design.points) {
+        resistance_.push_back(point.resistance);
+        if (heardByBoard())
+            sources_.push_back({0.5 * std::numbers::pi, point.along});
+    }
 
     atOnce_.assign(size_ * size_, 0.0);
     for (std::size_t p = 0; p < points; ++p) {
         const std::size_t k = static_cast<std::size_t>(first_[into]) + p;
-        atOnce_[k * size_ + k] = 1.0 / resistance_;
+        atOnce_[k * size_ + k] = 1.0 / resistance_[p];
     }
     for (std::size_t m = 0; m < modes_.size(); ++m)
         for (std::size_t i = 0; i < size_; ++i)
@@ -223,7 +226,7 @@ void Bridge::run(int count) noexcept {
         if (heardByBoard())
             for (std::size_t p = 0; p < static_cast<std::size_t>(points_); ++p)
                 heard_[(modes_.size() + p) * longestChunk + static_cast<std::size_t>(i)] =
-                    heardPerVelocity_ / resistance_ * state[static_cast<std::size_t>(first_[into]) + p];
+                    heardPerVelocity_ / resistance_[p] * state[static_cast<std::size_t>(first_[into]) + p];
         if (fadeLeft_ > 0) {
             --fadeLeft_;
             for (ModeState& mode : modes_) {

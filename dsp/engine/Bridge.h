@@ -1,4 +1,4 @@
-// Where the strings of a bridge meet the board: modes, and a resistance at each point, exact at every sample.
+// Where strings meet their board, over one bridge or several: modes, and a resistance at each point, exact at every sample.
 #pragma once
 
 #include "dsp/board/Soundboard.h"
@@ -12,13 +12,13 @@ namespace hitchpin::engine {
 
 enum Direction { across, into };
 
-/// Constructing allocates; the rest is real-time safe. A bridge has a component for each of its points in each direction
-/// in which something lets it move; its velocity v and the strings' pull F obey v = Y0·F + h, with h from the modes'
+/// Constructing allocates; the rest is real-time safe. The bridges of a board are one junction, with a component for
+/// each of their points in each direction in which something lets it move; its velocity v and the strings' pull F obey v = Y0·F + h, with h from the modes'
 /// states, and F = S − Z·v, with Z the strings' impedances and S = 2ΣZ·in: so (1 + Y0·Z)·v = Y0·S + h.
 /// Passive: what the strings lose, Σ Z(in² − out²), is Fv and goes into modes and resistance (ModeFilter.h).
 class Bridge {
 public:
-    Bridge(const design::BridgeDesign&, double sampleRate);
+    Bridge(const design::BoardDesign&, double sampleRate);
 
     bool rigid() const noexcept { return size_ == 0; }
     /// Heard by the board's motion rather than by the strings' forces.
@@ -59,7 +59,7 @@ public:
         double place; ///< 0…1 from left to right
     };
     const Source& source(int i) const noexcept { return sources_[static_cast<std::size_t>(i)]; }
-    /// Of the last run, in newtons (BridgeDesign::heard).
+    /// Of the last run, in newtons (BoardDesign::heard).
     const double* heard(int source) const noexcept {
         return &heard_[static_cast<std::size_t>(source) * longestChunk];
     }
@@ -71,7 +71,7 @@ private:
     };
     double* row(std::vector<double>& rows, std::size_t i) noexcept { return &rows[i * longestChunk]; }
 
-    int points_ = 1;
+    int points_ = 0;
     std::size_t size_ = 0; ///< components
     int first_[2] = {-1, -1};
     double heardPerVelocity_ = 0.0;
@@ -85,7 +85,7 @@ private:
     std::vector<double> drive_, velocity_, heard_; ///< rows of longestChunk
     std::vector<double> sample_;   ///< 3 × components: S, h, v of one sample
     std::vector<Source> sources_;
-    double resistance_ = 0.0;
+    std::vector<double> resistance_; ///< kg/s, by point
     double peak_ = 0.0;
     bool ringing_ = false;
     int fadeLeft_ = 0;

@@ -63,11 +63,12 @@ struct Engine::Running {
         double impedance = 0.0;
         bool freeBridge = false;
         int bridge = -1;        ///< whose motion it shares; −1 where that is rigid, or its end free
-        board::Sharing place;   ///< on the bridge
+        board::Sharing place;   ///< on its board
         double position = 0.5;
         std::array<Gains, 2> heardFrom{}, heardTo{}; ///< by direction
     };
 
+    /// A board with all bridges on it.
     struct Driven {
         Bridge bridge;
         std::vector<int> strings;
@@ -134,8 +135,8 @@ struct Engine::Running {
 
 Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     : design(std::move(given)), sampleRate(design->sampleRate) {
-    for (const auto& bridge : design->bridges)
-        bridges.push_back({Bridge(bridge, sampleRate), {}, {}, {}, 0.0, 0});
+    for (const auto& board : design->boards)
+        bridges.push_back({Bridge(board, sampleRate), {}, {}, {}, 0.0, 0});
     strings.reserve(design->strings.size());
     for (const auto& from : design->strings) {
         String& string = strings.emplace_back();
@@ -145,10 +146,10 @@ Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
         string.impedance = from.impedance;
         string.freeBridge = from.ends.bridge == string::End::free;
         string.position = std::clamp(from.bridgePosition, 0.0, 1.0);
-        Driven& driven = bridges[static_cast<std::size_t>(from.bridge)];
+        Driven& driven = bridges[static_cast<std::size_t>(from.board)];
         if (!string.freeBridge && !driven.bridge.rigid()) {
-            string.bridge = from.bridge;
-            string.place = board::sharing(string.position, design->bridges[static_cast<std::size_t>(from.bridge)].points);
+            string.bridge = from.board;
+            string.place = from.place;
             driven.strings.push_back(static_cast<int>(strings.size()) - 1);
         }
     }

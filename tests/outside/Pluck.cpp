@@ -14,6 +14,7 @@ int main() {
     if (!strung)
         return std::puts(strung.error().message.c_str()), 1;
     design::InstrumentDescription instrument;
+    instrument.boards.resize(1);
     instrument.bridges.resize(1);
     instrument.courses.resize(1);
     instrument.courses[0].strings = {*strung};

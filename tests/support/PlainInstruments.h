@@ -3,6 +3,7 @@
 
 #include "dsp/design/InstrumentDesign.h"
 
+#include <algorithm>
 #include <cmath>
 #include <memory>
 #include <stdexcept>
@@ -16,7 +17,7 @@ struct IdealString {
     double impedance = 0.5;    ///< kg/s
     string::Ends ends{};
     double gain = 1.0;         ///< once round
-    int bridge = 0;
+    int board = 0;
 };
 
 inline constexpr double idealRate = 48000.0;
@@ -48,15 +49,15 @@ inline design::StringDesign idealString(const IdealString& from, int course) {
     loop.gain = from.gain;
     design::StringDesign string = stringOf(loop, from.periodSamples, from.impedance, from.ends);
     string.course = course;
-    string.bridge = from.bridge;
+    string.board = from.board;
     return string;
 }
 
 inline std::shared_ptr<const design::InstrumentDesign> idealInstrument(const std::vector<IdealString>& strings,
-                                                                       const design::BridgeDesign& bridge = {}) {
+                                                                       const design::BoardDesign& board = {}) {
     auto design = std::make_shared<design::InstrumentDesign>();
     design->sampleRate = idealRate;
-    design->bridges = {bridge};
+    design->boards = {board};
     for (const auto& from : strings) {
         const int index = static_cast<int>(design->strings.size());
         design->strings.push_back(idealString(from, index));
@@ -83,10 +84,19 @@ struct RealString {
     double listeningRatio = 0.0;
 };
 
+/// With points for one bridge.
+inline board::Board plainBoard(board::BridgeKind kind, int points, double resistance, std::vector<board::Mode> modes = {}) {
+    board::Board board{kind, {}, std::move(modes)};
+    board::addBridge("", 0, board, points, resistance);
+    return board;
+}
+
+/// One bridge over all points of the board.
 inline design::InstrumentDescription realDescription(const std::vector<RealString>& courses,
-                                                     const board::Bridge& bridge = {}) {
+                                                     const board::Board& board = {}) {
     design::InstrumentDescription instrument;
-    instrument.bridges = {bridge};
+    instrument.boards = {board};
+    instrument.bridges = {{"bridge", 0, 0, std::max(1, static_cast<int>(board.points.size()))}};
     for (const auto& from : courses) {
         string::Description description;
         description.speakingLength = from.lengthMetres;
@@ -112,13 +122,18 @@ inline design::InstrumentDescription realDescription(const std::vector<RealStrin
     return instrument;
 }
 
-inline std::shared_ptr<const design::InstrumentDesign> realInstrument(const std::vector<RealString>& courses,
-                                                                      const board::Bridge& bridge = {},
-                                                                      double sampleRate = 48000.0) {
-    auto made = design::makeInstrument(realDescription(courses, bridge), {sampleRate, design::Quality::live});
+inline std::shared_ptr<const design::InstrumentDesign> designed(const design::InstrumentDescription& description,
+                                                                double sampleRate = 48000.0) {
+    auto made = design::makeInstrument(description, {sampleRate, design::Quality::live});
     if (!made)
         throw std::runtime_error(made.error().message);
     return std::move(made).value();
+}
+
+inline std::shared_ptr<const design::InstrumentDesign> realInstrument(const std::vector<RealString>& courses,
+                                                                      const board::Board& board = {},
+                                                                      double sampleRate = 48000.0) {
+    return designed(realDescription(courses, board), sampleRate);
 }
 
 } // namespace hitchpin::support

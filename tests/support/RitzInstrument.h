@@ -13,11 +13,11 @@
 
 namespace hitchpin::support {
 
-/// A hinged string at one point of a bridge, swinging into the board and, where the board moves so, across.
+/// A hinged string at one place of a board, swinging into the board and, where the board moves so, across.
 struct RitzString {
     double length, tension, linearDensity, bendingStiffness;
     std::vector<double> decayRates; ///< of the string alone, 1/s; as many as terms are wanted
-    double position = 0.5;          ///< on the bridge
+    board::Sharing place;           ///< on the board
 };
 
 struct RitzMatrices {
@@ -30,38 +30,38 @@ struct RitzMatrices {
 /// 1/N³).
 /// Kinetic energy of a string: μ/2·∫(ẏx/L + Σȧₙ sin)² = μL/2·(ẏ²/3 + Σȧₙ²/2 + 2ẏΣȧₙ(−1)ⁿ⁺¹/nπ); potential: T/2·(y²/L +
 /// Σaₙ²(nπ)²/2L) + EI/2·Σaₙ²(nπ/L)⁴L/2. Derived here from the energies; textbook mechanics.
-inline RitzMatrices ritzMatrices(const board::Bridge& bridge, const std::vector<RitzString>& strings) {
+inline RitzMatrices ritzMatrices(const board::Board& board, const std::vector<RitzString>& strings) {
     constexpr double pi = std::numbers::pi;
     bool movesAcross = false;
-    for (const board::Mode& mode : bridge.modes)
+    for (const board::Mode& mode : board.modes)
         movesAcross = movesAcross || std::abs(std::cos(mode.angle)) > 1e-9;
-    const int directions = movesAcross ? 2 : 1, points = bridge.points;
-    const auto modes = static_cast<Eigen::Index>(bridge.modes.size());
+    const int directions = movesAcross ? 2 : 1, points = static_cast<int>(board.points.size());
+    const auto modes = static_cast<Eigen::Index>(board.modes.size());
     Eigen::Index size = modes + points;
     for (const RitzString& string : strings)
         size += directions * static_cast<Eigen::Index>(string.decayRates.size());
     Eigen::MatrixXd m = Eigen::MatrixXd::Zero(size, size), c = m, k = m;
     for (Eigen::Index i = 0; i < modes; ++i) {
-        const board::Mode& mode = bridge.modes[static_cast<std::size_t>(i)];
+        const board::Mode& mode = board.modes[static_cast<std::size_t>(i)];
         const double w = 2.0 * pi * mode.frequency;
         m(i, i) = mode.mass;
         c(i, i) = mode.mass * w / mode.q;
         k(i, i) = mode.mass * w * w;
     }
     for (Eigen::Index p = 0; p < points; ++p) {
-        c(modes + p, modes + p) = bridge.resistance;
+        c(modes + p, modes + p) = board.points[static_cast<std::size_t>(p)].resistance;
         m(modes + p, modes + p) = 1e-7; // kg: next to nothing, where no string lends a point its mass
     }
     Eigen::Index next = modes + points;
     std::vector<Eigen::Index> firstTerm;
     for (const RitzString& string : strings) {
-        const board::Sharing place = board::sharing(string.position, points);
+        const board::Sharing& place = string.place;
         const double l = string.length, mu = string.linearDensity;
         for (int direction = 2 - directions; direction < 2; ++direction) {
             // The string's end over the coordinates.
             Eigen::VectorXd end = Eigen::VectorXd::Zero(size);
             for (Eigen::Index i = 0; i < modes; ++i) {
-                const board::Mode& mode = bridge.modes[static_cast<std::size_t>(i)];
+                const board::Mode& mode = board.modes[static_cast<std::size_t>(i)];
                 end[i] = board::shapeAt(mode, place) * (direction == 0 ? std::cos(mode.angle) : std::sin(mode.angle));
             }
             if (direction == 1) {
@@ -97,8 +97,8 @@ inline Eigen::MatrixXd firstOrder(const RitzMatrices& of) {
 }
 
 /// Complex frequencies s with Im s > 0, by rising frequency.
-inline std::vector<std::complex<double>> ritzPoles(const board::Bridge& bridge, const std::vector<RitzString>& strings) {
-    const Eigen::VectorXcd values = firstOrder(ritzMatrices(bridge, strings)).eigenvalues();
+inline std::vector<std::complex<double>> ritzPoles(const board::Board& board, const std::vector<RitzString>& strings) {
+    const Eigen::VectorXcd values = firstOrder(ritzMatrices(board, strings)).eigenvalues();
     std::vector<std::complex<double>> poles;
     for (const auto& value : values)
         if (value.imag() > 1e-6)

@@ -154,6 +154,40 @@ TEST_CASE("Strings are tuned on the board by their tension", "[document]") {
     CHECK(std::any_of(warnings.begin(), warnings.end(), [](const auto& w) { return w.rfind("wolf: the board's resonance at 220 Hz", 0) == 0; }));
 }
 
+TEST_CASE("Bridges on one board share its points and modes", "[document]") {
+    const auto of = [](const char* shape) {
+        return described(course(R"("note": "A3")", R"(, "bridge": "bass", "bridge_position": 0.25)") + "," +
+                             course(R"("note": "C4")", R"(, "bridge": "long", "bridge_position": 0.5)") + "," +
+                             course(R"("note": "E4")", R"(, "bridge": "post")"),
+                         R"("bridges": [{"name": "bass", "kind": "soundboard", "points": 2, "resistance_kg_s": 200,
+                             "modes": [{"frequency_hz": 180, "q": 30, "mass_kg": 0.3)" + juce::String(shape) + R"(}]},
+                             {"name": "post"},
+                             {"name": "long", "kind": "soundboard", "board": "bass", "points": 3, "resistance_kg_s": 300}], )");
+    };
+    const auto d = of(R"(, "shape": [1, 0.8, -0.2, -0.4, -0.6])");
+    const auto& instrument = d.instrument;
+    REQUIRE(instrument.boards.size() == 2);
+    REQUIRE(instrument.bridges.size() == 3);
+    const auto& board = instrument.boards[0];
+    REQUIRE(board.points.size() == 5);
+    CHECK(board.points[1].resistance == 200.0);
+    CHECK(board.points[2].resistance == 300.0);
+    CHECK(board.points[3].along == 0.5);
+    CHECK(instrument.boards[1].kind == board::BridgeKind::rigid);
+    CHECK(instrument.bridges[2].board == 0);
+    CHECK(instrument.bridges[2].firstPoint == 2);
+    CHECK(board::shapeAt(board.modes[0], board::sharing(instrument.bridges[0], 0.25)) == Approx(0.95));
+    CHECK(board::shapeAt(board.modes[0], board::sharing(instrument.bridges[2], 0.75)) == Approx(-0.5));
+    CHECK(of("").instrument.boards[0].modes[0].shape == std::vector<double>(5, 1.0));
+    // Each is in tune on the board that both stand on, the other at rest there.
+    for (std::size_t c = 0; c < 2; ++c) {
+        const auto& string = instrument.courses[c].strings[0];
+        const auto onBoard = board::partialOnBoard(string.partials, string.statics.impedance, design::mobilityFor(instrument, c, 0), 1);
+        CHECK(std::abs(centsBetween(onBoard.frequency, 440.0 * std::exp2((instrument.courses[c].key - 69) / 12.0))) < exact);
+        CHECK(std::abs(onBoard.shift) > 0.1);
+    }
+}
+
 TEST_CASE("A thousand courses are scheduled in under a second", "[document]") {
     juce::String plain, wound;
     for (int i = 0; i < 1000; ++i) {

@@ -64,6 +64,40 @@ TEST_CASE("Values out of range name place, value, unit and range", "[document]")
           Messages{"courses[0].windings[0].bare_mm = 1000 mm in all: must be under the speaking length, 900 mm"});
 }
 
+// Turned red by: a shape counted against the owner's points alone, a board found by its place in the file only.
+TEST_CASE("Bridges on one board are checked together", "[document]") {
+    const auto with = [](const char* second, const char* first = R"("kind": "soundboard", "points": 2)") {
+        return problems(file({}, R"("bridges": [{"name": "bass", )" + juce::String(first) + R"(}, {"name": "long", )" + second + "}], "));
+    };
+    const char* const mode = R"("modes": [{"frequency_hz": 90, "q": 20, "mass_kg": 5}])";
+    CHECK(with(R"("kind": "soundboard", "board": "bass")").empty());
+    CHECK(with(R"("kind": "soundboard", "board": "bas")") ==
+          Messages{"bridges[1].board = \"bas\": no such bridge; known are bass, long"});
+    CHECK(with(R"("kind": "soundboard", "board": "long")") == Messages{"bridges[1].board = \"long\": must be a bridge before this one"});
+    CHECK(with(R"("kind": "soundboard")", R"("kind": "soundboard", "board": "long")") ==
+          Messages{"bridges[0].board = \"long\": must be a bridge before this one"});
+    CHECK(with(R"("kind": "soundboard", "board": "bass")", R"("kind": "resistance")") ==
+          Messages{"bridges[1].board = \"bass\": bridges[0] has no soundboard"});
+    CHECK(with(R"("board": "bass")") == Messages{"bridges[1].board belongs to a bridge of kind \"soundboard\""});
+    CHECK(with((R"("kind": "soundboard", "board": "bass", )" + juce::String(mode)).toRawUTF8()) ==
+          Messages{"bridges[1].modes belong to the bridge whose board it is, \"bass\""});
+    CHECK(with(R"("kind": "soundboard", "board": "bass"}, {"name": "third", "kind": "soundboard", "board": "long")") ==
+          Messages{"bridges[2].board = \"long\": bridges[1] stands on the board of \"bass\" itself: name that"});
+    const auto shaped = [&](const char* shape) {
+        return with(R"("kind": "soundboard", "board": "bass", "points": 3)",
+                    (R"("kind": "soundboard", "points": 2, "modes": [{"frequency_hz": 90, "q": 20, "mass_kg": 5, "shape": )" +
+                     juce::String(shape) + "}]").toRawUTF8());
+    };
+    CHECK(shaped("[1, 0.5, 0.2, -0.1, -0.5]").empty());
+    CHECK(shaped("[1, 0.5]") ==
+          Messages{"bridges[0].modes[0].shape has 2 entries: must have one for each point of the bridges on its board, 5"});
+    CHECK(with(R"("kind": "soundboard")",
+               R"("kind": "soundboard", "modes": [{"frequency_hz": 90, "q": 20, "mass_kg": 5, "shape": [1, 1]}])") ==
+          Messages{"bridges[0].modes[0].shape has 2 entries: must have one for each of the bridge's points, 1"});
+    CHECK(with(R"("kind": "soundboard", "board": "bass", "points": 255)") ==
+          Messages{"bridges[0]: its board has 257 points, those of all bridges on it: must be at most 256"});
+}
+
 TEST_CASE("Unknown keys are errors that name the key and the nearest known one", "[document]") {
     CHECK(problems(file(R"(, "speaking_lenght_mm": 3)")) ==
           Messages{"courses[0].speaking_lenght_mm is not a known key: did you mean speaking_length_mm?"});

@@ -269,16 +269,17 @@ TEST_CASE("preset soundboards are believable", "[presets]") {
     const auto name = GENERATE(from_range(all));
     const auto p = preset(name);
     for (const auto& bridge : p.described.instrument.bridges) {
-        if (bridge.kind != board::BridgeKind::soundboard)
+        const auto& board = p.described.instrument.boards[static_cast<std::size_t>(bridge.board)];
+        if (board.kind != board::BridgeKind::soundboard)
             continue;
         INFO(name << " " << bridge.name);
-        const auto low = std::count_if(bridge.modes.begin(), bridge.modes.end(), [](const auto& m) { return m.frequency < 600.0; });
+        const auto low = std::count_if(board.modes.begin(), board.modes.end(), [](const auto& m) { return m.frequency < 600.0; });
         CHECK(low >= 5);
         CHECK(low <= 15);
-        CHECK(std::ssize(bridge.modes) > low); // and more above
+        CHECK(std::ssize(board.modes) > low); // and more above
         const bool large = name == std::string("small-piano");
         const double least = large ? 1e-4 : 1e-3, most = large ? 1.0 / 150.0 : 1e-1;
-        const board::MobilityAt mobility(bridge, 0.5);
+        const board::MobilityAt mobility(board, board::sharing(bridge, 0.5));
         double lowest = 1e9, highest = 0.0, sum = 0.0;
         int count = 0;
         for (double hz = 80.0; hz < 5000.0; hz *= 1.002, ++count) {
@@ -287,7 +288,7 @@ TEST_CASE("preset soundboards are believable", "[presets]") {
             highest = std::max(highest, y);
             sum += std::log(y);
         }
-        std::cout << name << " " << bridge.name << ": " << bridge.modes.size() << " modes, " << low
+        std::cout << name << " " << bridge.name << ": " << board.modes.size() << " modes, " << low
                   << " below 600 Hz; mobility " << lowest << " to " << highest << " s/kg, geometric mean "
                   << std::exp(sum / count) << "\n";
         CHECK(lowest >= least);

@@ -28,7 +28,7 @@ std::vector<double> pluckedAlone(const Preset& p, std::size_t course, double sec
     alone.courses = {alone.courses[course]};
     alone.courses.front().strings.resize(1);
     alone.courses.front().frets = 0;
-    alone.bridges.assign(alone.bridges.size(), {}); // rigid
+    alone.boards.assign(alone.boards.size(), {}); // rigid
     engine::Engine engine(designed(alone));
     engine::Pluck pluck;
     pluck.pointRatio = alone.courses.front().pluckRatio;

@@ -249,7 +249,7 @@ TEST_CASE("accuracy: poles of the loop and sound of the engine agree", "[design]
         REQUIRE(loop);
         auto instrument = std::make_shared<InstrumentDesign>();
         instrument->sampleRate = rate;
-        instrument->bridges = {{}};
+        instrument->boards = {{}};
         instrument->courses = {{}};
         const double roundTrip = rate / partials.frequency(1) * (string.ends.oneFree() ? 0.5 : 1.0);
         instrument->strings = {support::stringOf(*loop, roundTrip, 0.5, string.ends)};

@@ -22,10 +22,10 @@ constexpr double pi = std::numbers::pi;
 constexpr double shortestT60 = 0.05, mostCents = 0.5, mostDecay = 0.03;
 
 /// Modes as tap tones show them: the lowest near 100 Hz, ever closer, Q 20…45, mobility peaks of some hundredths s/kg.
-board::Bridge soundboard(int modes, int points, unsigned seed) {
+board::Board soundboard(int modes, int points, unsigned seed) {
     std::mt19937 random(seed);
     std::uniform_real_distribution<double> unit(0.0, 1.0);
-    board::Bridge bridge{"board", board::BridgeKind::soundboard, points, 150.0, {}};
+    board::Board board = support::plainBoard(board::BridgeKind::soundboard, points, 150.0);
     for (int i = 0; i < modes; ++i) {
         board::Mode mode;
         mode.frequency = 95.0 + 1500.0 * std::pow((i + 0.6 * unit(random)) / 20.0, 1.2);
@@ -34,9 +34,9 @@ board::Bridge soundboard(int modes, int points, unsigned seed) {
         mode.angle = (70.0 + 25.0 * unit(random)) * pi / 180.0;
         for (int p = 0; p < points; ++p)
             mode.shape.push_back(points == 1 ? 1.0 : std::cos(pi * (i % 4) * (p + 0.3) / points));
-        bridge.modes.push_back(mode);
+        board.modes.push_back(mode);
     }
-    return bridge;
+    return board;
 }
 
 struct Worst {
@@ -54,13 +54,15 @@ Worst compare(const design::InstrumentDescription& instrument, double sampleRate
     for (const auto& course : instrument.courses)
         for (const auto& string : course.strings) {
             support::RitzString ritz{string.description.speakingLength, string.statics.tension,
-                                     string.statics.linearDensity, string.statics.bendingStiffness, {}, course.bridgePosition};
+                                     string.statics.linearDensity, string.statics.bendingStiffness, {},
+                                     board::sharing(instrument.bridges[static_cast<std::size_t>(course.bridge)],
+                                                    course.bridgePosition)};
             for (int n = 1; n <= terms; ++n)
                 ritz.decayRates.push_back(string.partials.decayRate(n));
             strings.push_back(std::move(ritz));
         }
     Worst worst;
-    for (const auto& pole : support::ritzPoles(instrument.bridges.front(), strings)) {
+    for (const auto& pole : support::ritzPoles(instrument.boards.front(), strings)) {
         const double hz = pole.imag() / (2.0 * pi), decay = -pole.real();
         if (hz > highestHz || std::log(1000.0) / decay < shortestT60)
             continue;
@@ -119,6 +121,24 @@ TEST_CASE("Twelve strings on a board have the poles of their masses and springs"
         for (std::size_t i = 0; i < instrument.courses.size(); ++i)
             instrument.courses[i].bridgePosition = (static_cast<double>(i) + 0.5) / 12.0;
         report("twelve wires, board of " + std::to_string(modes), compare(instrument, 48000.0, 14, 800.0));
+    }
+}
+
+// Turned red by: a bridge whose points begin at the board's first, one resistance for all of a board's points.
+TEST_CASE("Two bridges on one board have the poles of their masses and springs", "[design][board]") {
+    std::vector<RealString> strings;
+    for (int i = 0; i < 8; ++i) {
+        const double hz = 123.5 * std::exp2((i - i % 2) * 2.0 / 12.0) * (i % 2 == 0 ? 1.0 : 1.0004);
+        strings.push_back({"music wire", 0.9 * std::pow(110.0 / hz, 0.85), 0.45e-3, hz, 45 + i});
+        strings.back().bridge = i % 2; // a string of much the same pitch on each
+    }
+    for (const int modes : {3, 8, 20}) {
+        auto instrument = support::realDescription(strings, soundboard(modes, 3, 17u));
+        instrument.bridges = {{"first", 0, 0, 1}, {"second", 0, 1, 2}};
+        instrument.boards.front().points[0].resistance = 90.0;
+        for (std::size_t i = 0; i < instrument.courses.size(); ++i)
+            instrument.courses[i].bridgePosition = (static_cast<double>(i) + 0.5) / 8.0;
+        report("eight wires on two bridges, board of " + std::to_string(modes), compare(instrument, 48000.0, 16, 800.0));
     }
 }
 

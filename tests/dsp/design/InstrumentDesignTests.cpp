@@ -30,8 +30,8 @@ string::Strung wire(double lengthM, double diameterM, double firstPartialHz) {
 InstrumentDescription instrument() {
     InstrumentDescription description;
     description.name = "test";
-    description.bridges = {{"yielding", board::BridgeKind::resistance, 1, 400.0, {}},
-                           {"rigid", board::BridgeKind::rigid, 1, 0.0, {}}};
+    description.boards = {{board::BridgeKind::resistance, {{400.0}}, {}}, {}};
+    description.bridges = {{"yielding", 0}, {"rigid", 1}};
     CourseDescription low, middle, high;
     low.name = "A2";
     low.key = 45;
@@ -64,15 +64,15 @@ TEST_CASE("instrument, every string at every stop", "[design]") {
     REQUIRE(made);
     const InstrumentDesign& design = **made;
     CHECK(design.sampleRate == 48000.0);
-    REQUIRE(design.bridges.size() == 2);
-    CHECK(design.bridges[0].resistance == 400.0);
+    REQUIRE(design.boards.size() == 2);
+    CHECK(design.boards[0].points[0].resistance == 400.0);
     REQUIRE(design.courses.size() == 3);
     REQUIRE(design.strings.size() == 5);
     CHECK(design.courses[1].firstString == 2);
     CHECK(design.courses[1].stringCount == 2);
     CHECK(design.courses[1].pluckRatio == 0.15);
     CHECK(design.courses[2].hasDamper);
-    CHECK(design.strings[4].bridge == 1);
+    CHECK(design.strings[4].board == 1);
 
     double worst = 0.0, longest = 0.0;
     for (std::size_t c = 0; c < design.courses.size(); ++c) {
@@ -156,7 +156,7 @@ TEST_CASE("instrument, failures name the course", "[design]") {
     description.courses[1].strings.clear();
     CHECK(failureOf(description) == "courses[1] (E4): has no strings");
     description = instrument();
-    description.bridges[0].resistance = 0.0;
-    CHECK(failureOf(description) == "bridges[0]: its resistance must be over 0 kg/s");
+    description.boards[0].points[0].resistance = 0.0;
+    CHECK(failureOf(description) == "boards[0]: its resistance must be over 0 kg/s at each point");
     CHECK(failureOf({}) == "the instrument has no courses");
 }

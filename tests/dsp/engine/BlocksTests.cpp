@@ -19,13 +19,19 @@ namespace {
 constexpr int total = 48000;
 
 std::shared_ptr<const design::InstrumentDesign> coupled() {
-    static const auto design = support::realInstrument(
+    // A bridge with two points and one with a single, on one board.
+    auto board = support::plainBoard(board::BridgeKind::soundboard, 2, 300.0,
+                                     {{197.0, 30.0, 0.3, 1.2, {1.0, 0.7, 0.5}, -0.3},
+                                      {410.0, 35.0, 0.2, 1.5, {0.8, -1.0, -0.6}, 0.4}});
+    const auto second = board::addBridge("second", 0, board, 1, 250.0);
+    auto description = support::realDescription(
         {RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 3, 0.7, 0, true},
          RealString{"music wire", 0.648, 0.33e-3, 329.6, 64, 1, 0.0, 7, false, {}, 0, 0.3},
-         RealString{"nylon", 0.65, 0.9e-3, 196.0, 55, 1, 0.0, 0, false, {}, 0, 0.9},
+         RealString{"nylon", 0.65, 0.9e-3, 196.0, 55, 1, 0.0, 0, false, {}, 1, 0.9},
          RealString{"music wire", 0.052, 0.79e-3, 4186.0, 108, 1, 0.0, 0, true, {}, 0, 0.05}},
-        {"board", board::BridgeKind::soundboard, 2, 300.0,
-         {{197.0, 30.0, 0.3, 1.2, {1.0, 0.7}, -0.3}, {410.0, 35.0, 0.2, 1.5, {0.8, -1.0}, 0.4}}});
+        board);
+    description.bridges = {{"first", 0, 0, 2}, second};
+    static const auto design = support::designed(description);
     return design;
 }
 

@@ -28,16 +28,16 @@ std::vector<double> render(Engine& engine, double seconds) {
     return sound;
 }
 
-support::RitzString ritz(const string::Strung& string, int terms, double position) {
+support::RitzString ritz(const string::Strung& string, int terms, board::Sharing place = {}) {
     support::RitzString made{string.description.speakingLength, string.statics.tension, string.statics.linearDensity,
-                             string.statics.bendingStiffness, {}, position};
+                             string.statics.bendingStiffness, {}, place};
     for (int n = 1; n <= terms; ++n)
         made.decayRates.push_back(string.partials.decayRate(n));
     return made;
 }
 
-board::Bridge oneMode(double hz, double q, double kg, double angle) {
-    return {"board", board::BridgeKind::soundboard, 1, 300.0, {{hz, q, kg, angle, {1.0}, 0.0}}};
+board::Board oneMode(double hz, double q, double kg, double angle) {
+    return support::plainBoard(board::BridgeKind::soundboard, 1, 300.0, {{hz, q, kg, angle, {1.0}, 0.0}});
 }
 
 } // namespace
@@ -66,7 +66,7 @@ TEST_CASE("Two unisons on a resistance have the roots of their equation", "[engi
         exact.push_back({s.imag() / (2.0 * pi), -s.real()});
     }
     Engine engine(support::idealInstrument({{first, impedance}, {second, impedance}},
-                                           {board::BridgeKind::resistance, resistance}));
+                                           {board::BridgeKind::resistance, {{resistance}}}));
     engine.pluck(0, {1.0, 0.31, 0.0, pi / 2.0});
     render(engine, 20.0 * first / rate);
     const auto found = analysis::checkPoles(render(engine, 3.0), rate, exact);
@@ -85,7 +85,7 @@ TEST_CASE("Two unisons on a resistance have the roots of their equation", "[engi
 // Weinreich (1977): what moves the bridge dies first; a grand's measured decays begin at least twice as fast as they end.
 TEST_CASE("A course of three decays in two stages and ends against each other", "[engine][board]") {
     Engine engine(support::realInstrument({RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 3, 0.15}},
-                                          {"board", board::BridgeKind::resistance, 1, 1000.0, {}}));
+                                          support::plainBoard(board::BridgeKind::resistance, 1, 1000.0)));
     for (int s = 0; s < 3; ++s)
         engine.pluck(s, {1.0, 0.12, 0.0, pi / 2.0});
     const auto level = [](const std::vector<double>& sound) {
@@ -109,8 +109,8 @@ TEST_CASE("A course of three decays in two stages and ends against each other", 
 TEST_CASE("Strings against each other outlive strings together", "[engine][board]") {
     const auto left = [](double second) {
         Engine engine(support::realInstrument({RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 2}},
-                                              {"board", board::BridgeKind::soundboard, 1, 1000.0,
-                                               {{180.0, 30.0, 3.0, pi / 2.0, {1.0}, 0.0}}}));
+                                              support::plainBoard(board::BridgeKind::soundboard, 1, 1000.0,
+                                                                  {{180.0, 30.0, 3.0, pi / 2.0, {1.0}, 0.0}})));
         engine.pluck(0, {1.0, 0.12, 0.0, pi / 2.0});
         engine.pluck(1, {second, 0.12, 0.0, pi / 2.0});
         render(engine, 0.1);
@@ -119,6 +119,32 @@ TEST_CASE("Strings against each other outlive strings together", "[engine][board
         return engine.energy() / before;
     };
     CHECK(left(-1.0) > 10.0 * left(1.0));
+}
+
+// Turned red by: a board for each bridge.
+TEST_CASE("A string makes one on the other bridge ring through their board, and none through another board", "[engine][board]") {
+    const auto heard = [](bool oneBoard) {
+        const board::Mode mode{300.0, 30.0, 0.4, pi / 2.0, {1.0}, 0.0};
+        auto instrument = support::realDescription(
+            {RealString{"music wire", 0.65, 0.4e-3, 196.0}, RealString{"music wire", 0.65, 0.4e-3, 196.0}});
+        instrument.boards = {{board::BridgeKind::soundboard, {}, {mode}}, {board::BridgeKind::soundboard, {}, {mode}}};
+        instrument.bridges.clear();
+        for (const int board : {0, oneBoard ? 0 : 1})
+            instrument.bridges.push_back(board::addBridge("", board, instrument.boards[static_cast<std::size_t>(board)], 1, 300.0));
+        if (oneBoard) {
+            instrument.boards.pop_back();
+            instrument.boards.front().modes.front().shape = {1.0, -0.7};
+        }
+        instrument.courses[1].bridge = 1;
+        Engine engine(support::designed(instrument));
+        engine.pluck(0, {1.0, 0.2, 0.0, pi / 2.0});
+        render(engine, 0.05);
+        const double put = engine.energy();
+        render(engine, 0.95);
+        return engine.energy(1) / put;
+    };
+    CHECK(heard(true) > 1e-3);
+    CHECK(heard(false) == 0.0);
 }
 
 // Turned red by: a mode's angle left out, cosine and sine changed over.
@@ -152,7 +178,7 @@ TEST_CASE("A silent octave answers as loud as its coupled modes say", "[engine][
 
     constexpr int terms = 40;
     const auto& plucked = instrument.courses[0].strings[0];
-    const auto of = support::ritzMatrices(bridge, {ritz(plucked, terms, 0.5), ritz(instrument.courses[1].strings[0], terms, 0.5)});
+    const auto of = support::ritzMatrices(bridge, {ritz(plucked, terms), ritz(instrument.courses[1].strings[0], terms)});
     const Eigen::Index size = of.m.rows(), at = of.firstTerm[0], other = of.firstTerm[1];
     Eigen::VectorXcd state = Eigen::VectorXcd::Zero(2 * size);
     for (int n = 1; n <= terms; ++n) // the shape that a newton holds; x runs from the nut
@@ -174,7 +200,7 @@ TEST_CASE("A partial on a strong mode splits as the eigenvalues say", "[engine][
     const auto bridge = oneMode(196.5, 60.0, 0.08, pi / 2.0);
     const auto instrument = support::realDescription({RealString{"music wire", 0.65, 0.6e-3, 196.0}}, bridge);
     std::vector<analysis::Pole> said;
-    for (const Complex s : support::ritzPoles(bridge, {ritz(instrument.courses[0].strings[0], 60, 0.5)}))
+    for (const Complex s : support::ritzPoles(bridge, {ritz(instrument.courses[0].strings[0], 60)}))
         if (s.imag() < 2.0 * pi * 5000.0)
             said.push_back({s.imag() / (2.0 * pi), -s.real()});
     const auto made = design::makeInstrument(instrument, {rate, design::Quality::reference});

@@ -51,34 +51,40 @@ const std::vector<design::StringDesign>& pool() {
     return strings;
 }
 
-/// Up to a dozen modes anywhere, at any angle, over up to four points.
-board::Bridge randomBoard(std::mt19937& random) {
+/// Up to a dozen modes anywhere, at any angle, under up to three bridges of up to four points.
+board::Board randomBoard(std::mt19937& random, std::vector<board::Bridge>& bridges) {
     std::uniform_real_distribution<double> unit(0.0, 1.0);
-    board::Bridge bridge{"", board::BridgeKind::soundboard, 1 + static_cast<int>(random() % 4),
-                         std::exp2(6.0 * unit(random) + 3.0), {}};
+    board::Board board{board::BridgeKind::soundboard, {}, {}};
+    for (std::size_t b = 1 + random() % 3; b > 0; --b) {
+        const int points = 1 + static_cast<int>(random() % 4);
+        bridges.push_back(board::addBridge("", 2, board, points, std::exp2(6.0 * unit(random) + 3.0)));
+    }
     for (std::size_t m = random() % 13; m > 0; --m) {
         board::Mode mode{60.0 * std::exp2(6.0 * unit(random)), 0.4 + 60.0 * unit(random), 0.02 * std::exp2(6.0 * unit(random)),
                          6.3 * unit(random), {}, 0.0};
-        for (int p = 0; p < bridge.points; ++p)
+        for (std::ptrdiff_t p = 0; p < std::ssize(board.points); ++p)
             mode.shape.push_back(2.0 * unit(random) - 1.0);
-        bridge.modes.push_back(std::move(mode));
+        board.modes.push_back(std::move(mode));
     }
-    return bridge;
+    return board;
 }
 
 std::shared_ptr<const design::InstrumentDesign> randomInstrument(std::mt19937& random) {
     std::uniform_real_distribution<double> unit(0.0, 1.0);
     auto design = std::make_shared<design::InstrumentDesign>();
     design->sampleRate = 48000.0;
-    design->bridges = {{board::BridgeKind::rigid, 0.0},
-                       {board::BridgeKind::resistance, std::exp2(12.0 * unit(random) - 2.0)},
-                       design::bridgeDesign(randomBoard(random), design->sampleRate)};
+    std::vector<board::Bridge> bridges{{"", 0}, {"", 1}};
+    design->boards = {{},
+                      {board::BridgeKind::resistance, {{std::exp2(12.0 * unit(random) - 2.0)}}},
+                      design::boardDesign(randomBoard(random, bridges), design->sampleRate)};
     const std::size_t count = 1 + random() % 12;
     for (std::size_t i = 0; i < count; ++i) {
         design->strings.push_back(pool()[random() % pool().size()]);
         design->strings.back().course = static_cast<int>(i);
-        design->strings.back().bridge = static_cast<int>(random() % 3);
+        const board::Bridge& bridge = bridges[random() % bridges.size()];
+        design->strings.back().board = bridge.board;
         design->strings.back().bridgePosition = unit(random);
+        design->strings.back().place = board::sharing(bridge, design->strings.back().bridgePosition);
     }
     return design;
 }

@@ -41,6 +41,7 @@ design::InstrumentDescription described(const yardstick::YardstickString& string
     strung.partials = string.partials();
     strung.statics.impedance = 0.7;
     design::InstrumentDescription instrument;
+    instrument.boards.resize(1);
     instrument.bridges.resize(1);
     design::CourseDescription course;
     course.strings = {strung};

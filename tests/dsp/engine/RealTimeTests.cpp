@@ -30,8 +30,8 @@ TEST_CASE("Playing asks nothing of the heap", "[engine][playing]") {
         {RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 3, 0.7, 0, true},
          RealString{"music wire", 0.648, 0.33e-3, 329.6, 64, 1, 0.0, 12, false},
          RealString{"nylon", 0.65, 0.9e-3, 196.0, 55, 1, 0.0, 0, false, {}, 0, 0.3}},
-        {"board", board::BridgeKind::soundboard, 2, 300.0,
-         {{197.0, 30.0, 0.3, 1.2, {1.0, 0.7}, -0.3}, {410.0, 35.0, 0.2, 1.5, {0.8, -1.0}, 0.4}}});
+        support::plainBoard(board::BridgeKind::soundboard, 2, 300.0,
+                            {{197.0, 30.0, 0.3, 1.2, {1.0, 0.7}, -0.3}, {410.0, 35.0, 0.2, 1.5, {0.8, -1.0}, 0.4}}));
     Player player(design, {});
     std::array<double, 512> left, right;
     using Kind = playing::Event::Kind;

@@ -22,8 +22,9 @@ constexpr double rate = 48000.0;
 /// The goal for a change that should be silent, against what sounds.
 constexpr double silentDb = -90.0;
 
-board::Bridge wood() {
-    return {"board", board::BridgeKind::soundboard, 1, 300.0, {{118.0, 30.0, 0.4, 1.3, {1.0}, 0.0}, {236.0, 32.0, 0.3, 1.5, {1.0}, 0.0}}};
+board::Board wood() {
+    return support::plainBoard(board::BridgeKind::soundboard, 1, 300.0,
+                               {{118.0, 30.0, 0.4, 1.3, {1.0}, 0.0}, {236.0, 32.0, 0.3, 1.5, {1.0}, 0.0}});
 }
 
 std::vector<RealString> strings(double cents = 0.0, int frets = 0) {

@@ -39,7 +39,7 @@ struct Motion {
 /// Two opposite plucks at the middle, a few samples apart, send a pulse of displacement both ways. What has not yet
 /// been at the bridge is not seen on the string, so within the first round trip the place shows only what has been
 /// reflected there.
-Motion firstRoundTrip(const IdealString& string, const design::BridgeDesign& bridge = {}) {
+Motion firstRoundTrip(const IdealString& string, const design::BoardDesign& bridge = {}) {
     Engine engine(support::idealInstrument({string}, bridge));
     Motion motion;
     for (int i = 0; i < roundTrip - away; ++i) {
@@ -123,7 +123,7 @@ TEST_CASE("A resistance reflects by its share, a matched one nothing", "[engine]
     for (const double ratio : {1e-13, 0.1, 0.3, 1.0, 3.0, 10.0, 1000.0}) {
         const double resistance = ratio * impedance;
         const auto motion =
-            firstRoundTrip({roundTrip, impedance}, {board::BridgeKind::resistance, resistance});
+            firstRoundTrip({roundTrip, impedance}, {board::BridgeKind::resistance, {{resistance}}});
         const double reflected = (impedance - resistance) / (impedance + resistance);
         for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
             worst = support::worse(worst, std::abs(motion.atPlace[t] - reflected * in[t - away]));

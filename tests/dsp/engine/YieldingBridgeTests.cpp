@@ -33,7 +33,7 @@ TEST_CASE("One yielding end gives the closed form decay", "[engine]") {
     const double impedance = 2.0608, admittance = 1e-3, frequency = 262.0;
     const int period = static_cast<int>(support::idealRate / frequency);
     const double f1 = support::idealRate / period;
-    Engine engine(support::idealInstrument({{period, impedance}}, {board::BridgeKind::resistance, 1.0 / admittance}));
+    Engine engine(support::idealInstrument({{period, impedance}}, {board::BridgeKind::resistance, {{1.0 / admittance}}}));
     engine.pluck(0, {1.0, 0.23, 0.0, std::numbers::pi / 2.0});
     const auto sound = render(engine, 3.0);
     std::vector<double> expected;
@@ -62,7 +62,7 @@ TEST_CASE("Two unisons on a resistance ring twice, fast and slow", "[engine]") {
     const int period = 184;
     const double f1 = support::idealRate / period, x = impedance / resistance;
     const auto instrument = support::idealInstrument({{period, impedance}, {period, impedance}},
-                                                     {board::BridgeKind::resistance, resistance});
+                                                     {board::BridgeKind::resistance, {{resistance}}});
     const auto measure = [&](double second) {
         Engine engine(instrument);
         engine.pluck(0, {1.0, 0.31, 0.0, std::numbers::pi / 2.0});
@@ -121,7 +121,7 @@ TEST_CASE("A string far away on the same bridge answers at its own octave", "[en
     const int period = 400;
     // The second string is an octave higher: its first partial is the first's second.
     const auto instrument = support::idealInstrument({{period, 1.0}, {period / 2, 1.0}, {311, 1.0}},
-                                                     {board::BridgeKind::resistance, resistance});
+                                                     {board::BridgeKind::resistance, {{resistance}}});
     Engine engine(instrument);
     engine.pluck(0, {1.0, 0.2, 0.0, std::numbers::pi / 2.0});
     render(engine, 1.0);

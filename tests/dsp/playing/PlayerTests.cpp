@@ -33,7 +33,7 @@ std::shared_ptr<const design::InstrumentDesign> damped() {
         support::realInstrument({RealString{"music wire", 0.62, 1.0e-3, 261.6, 60, 1, 0, 0, true},
                                  RealString{"music wire", 0.62, 1.0e-3, 261.7, 60, 1, 0, 0, true},
                                  RealString{"music wire", 0.33, 0.9e-3, 523.2, 72, 1, 0, 0, false}},
-                                {"bridge", board::BridgeKind::resistance, 1, 2000.0, {}});
+                                support::plainBoard(board::BridgeKind::resistance, 1, 2000.0));
     return design;
 }
 
