@@ -15,8 +15,8 @@ using support::RealString;
 // Turned red by: a rest that is never taken, states that are not flushed, modes that ring for ever.
 TEST_CASE("Sixty seconds of decay end in true silence", "[engine]") {
     constexpr int rate = 48000, seconds = 60;
-    const board::Bridge board{"board", board::BridgeKind::soundboard, 2, 150.0,
-                              {{110.0, 30.0, 0.4, 1.3, {1.0, 0.6}, 0.0}, {600.0, 60.0, 0.2, 1.5, {0.5, -1.0}, 0.0}}};
+    const board::Board board{board::BridgeKind::soundboard, {{150.0, 0.0}, {150.0, 1.0}},
+                             {{110.0, 30.0, 0.4, 1.3, {1.0, 0.6}, 0.0}, {600.0, 60.0, 0.2, 1.5, {0.5, -1.0}, 0.0}}};
     // On this board all are 214 dB down (Engine.cpp's rest) well within the minute; a thick wire in unison would not be.
     Engine engine(support::realInstrument({RealString{"nylon", 0.65, 1.0e-3, 110.0, 45, 2, 3.0},
                                            RealString{"music wire", 0.4, 0.3e-3, 329.6, 64},

@@ -107,7 +107,7 @@ TEST_CASE("Two unisons on a resistance ring twice, fast and slow", "[engine]") {
 // Turned red by: strings that wake only some time after the bridge began to move.
 TEST_CASE("A string at rest follows its bridge from the first sample on", "[engine]") {
     const double resistance = 300.0, impedance = 1.5;
-    Engine engine(support::idealInstrument({{400, 1.0}, {200, impedance}}, {board::BridgeKind::resistance, resistance}));
+    Engine engine(support::idealInstrument({{400, 1.0}, {200, impedance}}, {board::BridgeKind::resistance, {{resistance}}}));
     engine.pluck(0, {1.0, 0.2, 0.0, std::numbers::pi / 2.0});
     double taken = 0.0;
     for (const double force : render(engine, 190.0 / support::idealRate))
