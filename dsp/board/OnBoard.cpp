@@ -13,23 +13,24 @@ constexpr double pi = std::numbers::pi;
 
 double cents(double hz, double reference) { return 1200.0 * std::log2(hz / reference); }
 
-/// The mobility in the direction that is mostly into the board.
-Complex mostlyInto(const Mobility& y) {
+/// The mobility in the direction of the motion.
+Complex along(Motion motion, const Mobility& y) {
     if (y.coupled == 0.0)
-        return y.into;
+        return motion == Motion::mostlyInto ? y.into : y.across;
     const Complex mean = 0.5 * (y.across + y.into), half = 0.5 * (y.into - y.across);
     const Complex root = std::sqrt(half * half + y.coupled * y.coupled);
-    return std::abs(root - half) <= std::abs(root + half) ? mean + root : mean - root;
+    const bool plusIsInto = std::abs(root - half) <= std::abs(root + half);
+    return plusIsInto == (motion == Motion::mostlyInto) ? mean + root : mean - root;
 }
 
 /// How far the board moves the pole of a string with that round trip and impedance: (2/τ)·atanh(Z·Y(s)).
 class Pull {
 public:
-    Pull(const MobilityAt& mobility, double impedance, double roundTrip)
-        : mobility_(mobility), impedance_(impedance), roundTrip_(roundTrip) {}
+    Pull(const MobilityAt& mobility, double impedance, double roundTrip, Motion motion)
+        : mobility_(mobility), impedance_(impedance), roundTrip_(roundTrip), motion_(motion) {}
 
     Complex operator()(Complex s) const {
-        return 2.0 / roundTrip_ * std::atanh(impedance_ * mostlyInto(mobility_(s)));
+        return 2.0 / roundTrip_ * std::atanh(impedance_ * along(motion_, mobility_(s)));
     }
     /// By s: central difference over a thousandth of a hertz, far less than any resonance is wide.
     Complex slope(Complex s) const {
@@ -42,6 +43,7 @@ public:
 private:
     const MobilityAt& mobility_;
     double impedance_, roundTrip_;
+    Motion motion_;
 };
 
 Complex ownPole(const string::Partials& partials, int n) {
@@ -66,10 +68,11 @@ bool settle(const Pull& pull, Complex own, double spacing, Complex& s) {
 
 } // namespace
 
-PartialOnBoard partialOnBoard(const string::Partials& partials, double impedance, const MobilityAt& mobility, int n) {
+PartialOnBoard partialOnBoard(const string::Partials& partials, double impedance, const MobilityAt& mobility, int n,
+                              Motion motion) {
     const Complex own = ownPole(partials, n);
     const double spacing = 2.0 * pi * partials.slope(n);
-    const Pull pull(mobility, impedance, 1.0 / partials.slope(n));
+    const Pull pull(mobility, impedance, 1.0 / partials.slope(n), motion);
     Complex best = own;
     double share = -1.0;
     const auto tryFrom = [&](Complex s) {
@@ -106,7 +109,7 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
     for (int round = 0; round < mostRounds; ++round) {
         const string::Strung& now = tuned.strung;
         const double roundTrip = 1.0 / now.partials.slope(1.0);
-        const Pull pull(mobility, now.statics.impedance, roundTrip);
+        const Pull pull(mobility, now.statics.impedance, roundTrip, Motion::mostlyInto);
         Complex s(-now.partials.decayRate(1.0), 2.0 * pi * hz);
         for (int inner = 0; inner < 4; ++inner) // Y hardly depends on the decay
             s.real(-now.partials.decayRate(1.0) - pull(s).real());

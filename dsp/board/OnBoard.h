@@ -7,7 +7,10 @@
 
 namespace hitchpin::board {
 
-/// Partial n of a string on the board, in the motion that is mostly `into` the board.
+/// A string swings in two ways; where a mode lies at an angle neither is purely into the board or across it.
+enum class Motion { mostlyInto, mostlyAcross };
+
+/// Partial n of a string on the board, in one motion.
 struct PartialOnBoard {
     double frequency = 0.0; ///< Hz
     double decayRate = 0.0; ///< 1/s of the amplitude
@@ -19,9 +22,10 @@ struct PartialOnBoard {
 /// The sounding pole s next to the string's own s_n = −σ_n + j2πf_n. A string of round trip τ = dn/df and impedance Z
 /// meets its bridge with Z·coth((s − s_n)τ/2), exact for a string whose τ is steady about s_n, so that
 ///     s = s_n − (2/τ)·atanh(Z·Y(s)).
-/// Y is the mobility's eigenvalue in the direction that is mostly into the board. Where a mode lies near, there are
+/// Y is the mobility's eigenvalue in the direction of the motion. Where a mode lies near, there are
 /// several roots: the one in which the string takes most part, Re ds/ds_n, is meant.
-PartialOnBoard partialOnBoard(const string::Partials&, double impedance, const MobilityAt&, int n);
+PartialOnBoard partialOnBoard(const string::Partials&, double impedance, const MobilityAt&, int n,
+                              Motion = Motion::mostlyInto);
 
 /// Where a resonance pulls by more than this (cents) no tension brings the string to its pitch in a way that would be
 /// called in tune: a wolf.

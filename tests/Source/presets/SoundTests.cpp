@@ -1,7 +1,9 @@
 // Every preset string is in tune in its loop and in its sound, every course is heard, and decays are those of a board.
 #include "tests/Source/presets/Presets.h"
 
+#include "dsp/analysis/CheckPoles.h"
 #include "dsp/analysis/Measure.h"
+#include "dsp/board/OnBoard.h"
 
 #include <cmath>
 #include <iostream>
@@ -130,13 +132,32 @@ TEST_CASE("preset strings sound on their boards as the schedule says", "[presets
             if (s != own)
                 engine.damp(s, 0.01);
         engine.pluck(own, {1.0, 0.2, 0.0, 0.5 * std::numbers::pi});
-        std::vector<double> sound(static_cast<std::size_t>(rate));
-        engine.process(sound.data(), nullptr, 9600); // plucks, and what the resonances had of them, are over
+        // Plucks, and the board's own resonances, are over by then.
+        std::vector<double> sound(static_cast<std::size_t>(2.0 * rate));
+        engine.process(sound.data(), nullptr, static_cast<int>(rate));
         engine.process(sound.data(), nullptr, static_cast<int>(sound.size()));
-        const auto measured = analysis::measurePartials(sound, rate, std::vector{row.pitchHz, 2.0 * row.pitchHz});
-        REQUIRE(measured.front().frequency > 0.0);
-        worstCents = std::max(worstCents, std::abs(analysis::centsBetween(measured.front().frequency, row.pitchHz)));
-        worstDecay = std::max(worstDecay, std::abs(measured.front().t60 / row.boardT60S.front() - 1.0));
+        // All that sounds near the first partial: in both motions, which may lie a hundredth of a hertz apart.
+        std::vector<analysis::Pole> said;
+        const auto& string = instrument.courses[index].strings.front();
+        for (int n = 1; n <= 8; ++n)
+            for (const auto motion : {board::Motion::mostlyInto, board::Motion::mostlyAcross}) {
+                const auto partial = board::partialOnBoard(string.partials, string.statics.impedance,
+                                                           design::mobilityFor(instrument, index, 0), n, motion);
+                // On a rigid bridge both motions are one.
+                if (partial.frequency < row.pitchHz + 200.0 &&
+                    (said.empty() || said.back().frequency != partial.frequency))
+                    said.push_back({partial.frequency, partial.decayRate});
+            }
+        std::sort(said.begin(), said.end(), [](const auto& a, const auto& b) { return a.frequency < b.frequency; });
+        const auto found = analysis::checkPoles(sound, rate, said);
+        const auto nearest = std::min_element(said.begin(), said.end(), [&](const auto& a, const auto& b) {
+            return std::hypot(a.frequency / row.pitchHz - 1.0, row.boardT60S.front() * a.decayRate / std::log(1000.0) - 1.0) <
+                   std::hypot(b.frequency / row.pitchHz - 1.0, row.boardT60S.front() * b.decayRate / std::log(1000.0) - 1.0);
+        });
+        const auto& measured = found[static_cast<std::size_t>(nearest - said.begin())].measured;
+        worstCents = std::max(worstCents, std::abs(analysis::centsBetween(measured.frequency, row.pitchHz)));
+        worstDecay = std::max(worstDecay,
+                              std::abs(std::log(1000.0) / measured.decayRate / row.boardT60S.front() - 1.0));
     }
     std::cout << name << ": on the board, sound against schedule: worst " << worstCents << " cents of " << cents << ", ring time "
               << 100.0 * worstDecay << " % of " << 100.0 * decay << "\n";
