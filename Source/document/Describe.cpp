@@ -226,7 +226,7 @@ private:
         to.key = placed.key;
         to.bridge = placed.bridge;
         to.bridgePosition = placed.position;
-        to.pluckRatio = pluckRatioOf(from, instrument_.playing.with);
+        to.pluckRatio = playing::pluckable(pluckRatioOf(from, instrument_.playing.with) + adjustments_.pluckPointOffset);
         to.hasDamper = from.damper;
         to.frets = from.frets;
         for (int s = 0; s < from.strings; ++s) {
@@ -287,6 +287,7 @@ private:
     void rules() {
         const auto& playing = instrument_.playing;
         auto& rules = described_.rules;
+        rules.pluckPointOffset = adjustments_.pluckPointOffset;
         rules.width = playing.widthMm * 1e-3;
         rules.force = playing.heightMm ? forceForHeight(*playing.heightMm * 1e-3) : playing.forceN;
         rules.angle = radians(playing.angleDeg);

@@ -36,6 +36,7 @@ struct Adjustments {
     double lengthFactor = 1.0;       ///< at held tension: pitch follows
     double temperatureOffsetK = 0.0; ///< added to the climate's temperature
     double pitchOffsetCents = 0.0;   ///< retunes by tension
+    double pluckPointOffset = 0.0;   ///< added to every pluck ratio; the result is kept within playing::pluckable
     bool operator==(const Adjustments&) const = default;
 };
 

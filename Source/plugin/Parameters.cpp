@@ -126,6 +126,7 @@ document::Adjustments Parameters::adjustments() const noexcept {
     adjustments.lengthFactor = value(lengthFactor);
     adjustments.temperatureOffsetK = value(temperatureOffset);
     adjustments.pitchOffsetCents = value(pitchOffset);
+    adjustments.pluckPointOffset = value(pluckPointOffset) / 100.0;
     return adjustments;
 }
 

@@ -9,9 +9,6 @@ namespace {
 /// A finger that leaves a fret puts the string out nearly as fast as a damper in the treble. Common practice.
 constexpr double fingerLeavesT60 = 0.08; // s
 
-/// Nearer to an end than this nobody can take a string.
-constexpr double nearestToAnEnd = 0.02;
-
 bool isPedalDown(double value) { return value >= 64.0; } // MIDI 1.0: 64…127 is on
 
 } // namespace
@@ -158,7 +155,7 @@ void Player::pluck(std::size_t index, double velocity) noexcept {
     const design::CourseDesign& design = engine_.design().courses[index];
     engine::Pluck pluck;
     pluck.force = rules_.force * factorFor(velocity) * hand_.forceFactor;
-    pluck.pointRatio = std::clamp(design.pluckRatio + hand_.pluckPointOffset, nearestToAnEnd, 1.0 - nearestToAnEnd);
+    pluck.pointRatio = pluckable(design.pluckRatio + (hand_.pluckPointOffset - rules_.pluckPointOffset));
     pluck.width = rules_.width * hand_.widthFactor;
     pluck.angle = rules_.angle + hand_.angleOffset;
     for (int i = 0; i < design.stringCount; ++i)

@@ -27,8 +27,12 @@ struct VelocityPoint {
     double factor;   ///< times the force
 };
 
+/// Nearer to an end than 0.02 of its length nobody can take a string.
+constexpr double pluckable(double ratio) noexcept { return ratio < 0.02 ? 0.02 : ratio > 0.98 ? 0.98 : ratio; }
+
 /// How this instrument is played by default.
 struct Rules {
+    double pluckPointOffset = 0.0; ///< that the design has in its pluck ratios already
     double width = 0.003;   ///< m
     double force = 2.0;     ///< N at factor 1
     double angle = 0.7853981633974483; ///< rad from across towards into
@@ -39,7 +43,8 @@ struct Rules {
 
 /// What a player changes while playing: neutral factors and offsets on the rules.
 struct Hand {
-    double pluckPointOffset = 0.0; ///< added to the ratio; the result is kept within 0.02…0.98
+    /// Added to the ratio, which is kept `pluckable`. At once; exact (Release.h) when a design made for it has come.
+    double pluckPointOffset = 0.0;
     double widthFactor = 1.0;
     double angleOffset = 0.0;      ///< rad
     double forceFactor = 1.0;

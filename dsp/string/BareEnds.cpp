@@ -36,8 +36,8 @@ std::vector<double> steppedRatios(double inharmonicity, const MassSteps& steps, 
             const double lack = nut[i - j] - nut[i + j] + mirror * (bridge[i - j] - bridge[i + j]);
             m(i - 1, j - 1) = ((i == j ? 1.0 : 0.0) - lack) / (rootStiffness[i - 1] * rootStiffness[j - 1]);
         }
-    // In two steps, because the solver's own first step brings the eigenvectors' code along (seconds of building for what is
-    // not asked here).
+    // In two steps: the solver's own first step brings the eigenvectors' code along, seconds of building for what is not
+    // asked here.
     const Eigen::Tridiagonalization<Eigen::MatrixXd> tridiagonal(m);
     Eigen::SelfAdjointEigenSolver<Eigen::MatrixXd> solver;
     solver.computeFromTridiagonal(tridiagonal.diagonal(), tridiagonal.subDiagonal(), Eigen::EigenvaluesOnly);

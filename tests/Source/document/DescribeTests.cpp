@@ -97,6 +97,13 @@ TEST_CASE("What a host turns acts after tuning", "[document]") {
     CHECK(centsBetween(first(described(course(R"("note": "A3")"), {}, {1.0, 0.5, 0.0, 0.0})), neutral) == Approx(1200.0).margin(1.0));
 }
 
+TEST_CASE("A pluck point that is turned is designed, and known to be", "[document]") {
+    const auto turned = described(course(R"("note": "A3", "pluck_ratio": 0.2)"), {}, {1.0, 1.0, 0.0, 0.0, 0.05});
+    CHECK(turned.instrument.courses[0].pluckRatio == Approx(0.25));
+    CHECK(turned.rules.pluckPointOffset == 0.05);
+    CHECK(described(course(R"("note": "A3", "pluck_ratio": 0.2)"), {}, {1.0, 1.0, 0.0, 0.0, -0.5}).instrument.courses[0].pluckRatio == 0.02);
+}
+
 TEST_CASE("Every key strung fills the gaps between courses", "[document]") {
     const auto d = described(course(R"("note": "C4")") + R"(,{"note": "C5", "speaking_length_mm": 330, "core": {"material": "music wire", "diameter_mm": 0.3}})",
                              R"("playing": {"notes": "every key strung"}, )");

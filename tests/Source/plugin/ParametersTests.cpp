@@ -103,5 +103,6 @@ TEST_CASE("parameters reach what they name in SI") {
     CHECK_THAT(parameters.hand().angleOffset, WithinAbs(0.7853981633974483, rounding)); // π/4
     CHECK_THAT(parameters.listening().angle, WithinAbs(0.5235987755982988, rounding)); // π/6
     CHECK(parameters.adjustments().temperatureOffsetK == -5.0);
+    CHECK_THAT(parameters.adjustments().pluckPointOffset, WithinAbs(0.1, rounding)); // at once and, soon, exactly
     CHECK_THAT(parameters.outputGain(), WithinAbs(0.1, rounding));
 }

@@ -1,5 +1,6 @@
 // The meter against sounds whose partials are known: in closed form, and from SciPy (tests/data).
 #include "dsp/analysis/Measure.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -25,17 +26,18 @@ struct Worst {
 };
 
 Worst worstOf(const std::vector<MeasuredPartial>& measured, const std::vector<Known>& known) {
+    using hitchpin::support::worse;
     Worst worst;
     for (std::size_t i = 0; i < known.size(); ++i) {
         if (measured[i].frequency == 0.0) {
             ++worst.missed;
             continue;
         }
-        worst.cents =
-            std::max(worst.cents, std::abs(centsBetween(measured[i].frequency, known[i].frequency)));
-        worst.decay = std::max(worst.decay, std::abs(measured[i].decayRate / known[i].decayRate - 1.0));
-        worst.amplitude =
-            std::max(worst.amplitude, std::abs(measured[i].amplitude / known[i].amplitude - 1.0));
+        worst.cents = worse(
+            worst.cents, std::abs(centsBetween(measured[i].frequency, known[i].frequency)));
+        worst.decay = worse(worst.decay, std::abs(measured[i].decayRate / known[i].decayRate - 1.0));
+        worst.amplitude = worse(
+            worst.amplitude, std::abs(measured[i].amplitude / known[i].amplitude - 1.0));
     }
     return worst;
 }

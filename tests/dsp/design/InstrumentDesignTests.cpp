@@ -1,6 +1,7 @@
 #include "dsp/design/InstrumentDesign.h"
 
 #include "dsp/analysis/Measure.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -98,7 +99,7 @@ TEST_CASE("instrument, every string at every stop", "[design]") {
                       1e-9);
                 CHECK(std::abs(loop.accuracy.partials.front().cents) <= firstPartialCents);
                 CHECK(loop.accuracy.peakLoopGain < 1.0);
-                worst = std::max(worst, loop.accuracy.worstCents);
+                worst = support::worse(worst, loop.accuracy.worstCents);
                 longest = std::max(longest, stopped.partials.t60(1));
             }
         }

@@ -4,6 +4,7 @@
 #include "dsp/analysis/Measure.h"
 #include "dsp/design/Sections.h"
 #include "tests/support/LoopPoles.h"
+#include "tests/support/Worse.h"
 #include "tests/support/YardstickStrings.h"
 
 #include <catch2/catch.hpp>
@@ -59,13 +60,12 @@ Judged judge(const LoopDesign& loop, const string::Partials& partials) {
         const double cents = std::abs(analysis::centsBetween(pole.frequency, target));
         if (n == 1)
             judged.firstCents = cents;
-        if (cents > judged.worstCents) {
-            judged.worstCents = cents;
+        if (!(cents <= judged.worstCents))
             judged.worstPartial = n;
-        }
+        judged.worstCents = support::worse(judged.worstCents, cents);
         if (target <= 6000.0)
             judged.worstT60 =
-                std::max(judged.worstT60, std::abs(partials.decayRate(n) / pole.decayRate - 1.0));
+                support::worse(judged.worstT60, std::abs(partials.decayRate(n) / pole.decayRate - 1.0));
     }
     return judged;
 }
@@ -118,8 +118,8 @@ TEST_CASE("loop, first partial of a whole compass at every rate", "[design]") {
             INFO("key " << key << " at " << rate << " Hz");
             checkSound(loop);
             CHECK(std::abs(analysis::centsBetween(pole.frequency, f1)) <= firstPartialCents);
-            worst = std::max(worst, std::abs(analysis::centsBetween(pole.frequency, f1)));
-            worstAll = std::max(worstAll, loop.accuracy.worstCents);
+            worst = support::worse(worst, std::abs(analysis::centsBetween(pole.frequency, f1)));
+            worstAll = support::worse(worstAll, loop.accuracy.worstCents);
         }
     }
     std::cout << "loop, first partials A0 to C8, 22.05 to 192 kHz: worst " << worst
@@ -154,8 +154,8 @@ TEST_CASE("loop, sound for any string", "[design]") {
         const double cents = std::abs(analysis::centsBetween(pole.frequency, partials.frequency(1)));
         CHECK(cents <= firstPartialCents);
         CHECK(running.peakGain(250) < 1.0);
-        worstFirst = std::max(worstFirst, cents);
-        worstPeak = std::max(worstPeak, loop.accuracy.peakLoopGain);
+        worstFirst = support::worse(worstFirst, cents);
+        worstPeak = support::worse(worstPeak, loop.accuracy.peakLoopGain);
         poor += loop.accuracy.worstCents > partialCents ? 1 : 0;
     }
     std::cout << "loop, " << count << " random strings: first partial within " << worstFirst

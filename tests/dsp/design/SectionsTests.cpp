@@ -1,4 +1,5 @@
 #include "dsp/design/Sections.h"
+#include "tests/support/Worse.h"
 
 #include "dsp/design/LoopModel.h"
 #include "tests/support/LoopPoles.h"
@@ -49,8 +50,8 @@ TEST_CASE("section, direct form is the bilinear map of its constants", "[design]
             const auto digital = (a2 + a1 * back + back * back) / (1.0 + a1 * back + a2 * back * back);
             const auto analogue =
                 (s * s - section.c1 * s + section.c0) / (s * s + section.c1 * s + section.c0);
-            worst = std::max(worst, std::abs(digital - analogue));
-            worst = std::max(worst, std::abs(std::abs(digital) - 1.0));
+            worst = hitchpin::support::worse(worst, std::abs(digital - analogue));
+            worst = hitchpin::support::worse(worst, std::abs(std::abs(digital) - 1.0));
         }
         CHECK(std::abs(a2) < 1.0); // the triangle of stability
         CHECK(std::abs(a1) < 1.0 + a2);
@@ -78,8 +79,8 @@ TEST_CASE("section, ladder sounds like direct form and keeps its energy to the l
             const double after = y * y + ladder.m1 * ladder.m1 + ladder.m2 * ladder.m2;
             const double direct = a2 * x + a1 * x1 + x2 - a1 * y1 - a2 * y2;
             x2 = x1, x1 = x, y2 = y1, y1 = direct;
-            worstDifference = std::max(worstDifference, std::abs(direct - y));
-            worstEnergy = std::max(worstEnergy, std::abs(after - before) / (1.0 + before));
+            worstDifference = hitchpin::support::worse(worstDifference, std::abs(direct - y));
+            worstEnergy = hitchpin::support::worse(worstEnergy, std::abs(after - before) / (1.0 + before));
         }
     }
     INFO("worst difference " << worstDifference << ", worst change of energy " << worstEnergy);

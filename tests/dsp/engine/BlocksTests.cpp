@@ -100,8 +100,9 @@ TEST_CASE("Saying again where one listens changes nothing", "[engine]") {
     Engine once(coupled()), often(coupled());
     std::vector<double> a(9600), b(9600);
     for (Engine* engine : {&once, &often}) {
-        engine->listen({0.9, 0.6});
         engine->pluck(0, {2.0, 0.2, 0.003, 0.8});
+        engine->process(a.data(), nullptr, 960);
+        engine->listen({0.9, 0.6}); // a move that takes longer than the blocks below
     }
     once.process(a.data(), nullptr, 9600);
     for (int done = 0; done < 9600; done += 96) {

@@ -4,6 +4,7 @@
 #include "dsp/engine/Engine.h"
 #include "dsp/engine/Release.h"
 #include "tests/support/PlainInstruments.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -65,7 +66,7 @@ TEST_CASE("The bridge force of a pluck follows sin n pi beta over n", "[engine]"
         const auto heard = partials(into(2.0, beta), 40);
         for (int n = 1; n <= 40; ++n) {
             const double expected = 2.0 * 2.0 / (std::numbers::pi * n) * std::sin(n * std::numbers::pi * beta);
-            worst = std::max(worst, std::abs(heard[static_cast<std::size_t>(n - 1)] - expected));
+            worst = support::worse(worst, std::abs(heard[static_cast<std::size_t>(n - 1)] - expected));
         }
     }
     std::cout << "ideal pluck of 2 N, forty partials at six places: worst " << worst << " N (allowed "
@@ -133,7 +134,7 @@ TEST_CASE("A wide finger takes the upper partials by its width", "[engine]") {
     double worst = 0.0;
     for (int n = 1; n <= 30; ++n) {
         const double x = n * std::numbers::pi * width / 2.0;
-        worst = std::max(worst, std::abs(wide[static_cast<std::size_t>(n - 1)] -
+        worst = support::worse(worst, std::abs(wide[static_cast<std::size_t>(n - 1)] -
                                          sharp[static_cast<std::size_t>(n - 1)] * std::sin(x) / x));
     }
     std::cout << "wide finger: worst " << worst << " N of 1 N (allowed " << amplitudeTolerance << ")\n";
@@ -168,7 +169,7 @@ TEST_CASE("Plucks add on a ringing string, as many as come", "[engine]") {
     const auto once = sound(1), eight = sound(8);
     double worst = 0.0;
     for (std::size_t i = 0; i < once.size(); ++i)
-        worst = std::max(worst, std::abs(once[i] - eight[i]));
+        worst = support::worse(worst, std::abs(once[i] - eight[i]));
     CHECK(worst < 1e-12);
     // More than eight at the same instant: the oldest is ended early, but nothing clicks or runs away.
     for (const double x : sound(50))

@@ -2,6 +2,7 @@
 // Common practice.
 #include "dsp/engine/Engine.h"
 #include "tests/support/PlainInstruments.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -75,7 +76,7 @@ TEST_CASE("Mode n has n antinodes and n plus 1 still points, ends counted", "[en
         CHECK(counted.antinodes == n);
         for (int k = 0; k <= n; ++k)
             CHECK(shape[static_cast<std::size_t>(k * places / n)] < 1e-9);
-        worst = std::max(worst, counted.deepest);
+        worst = support::worse(worst, counted.deepest);
     }
     std::cout << "still points move at most " << worst << " of the antinodes (allowed 1e-9)\n";
 }

@@ -3,6 +3,7 @@
 // reflects displacement by (Z − R)/(Z + R), so that R = Z swallows it.
 #include "dsp/engine/Engine.h"
 #include "tests/support/PlainInstruments.h"
+#include "tests/support/Worse.h"
 
 #include <catch2/catch.hpp>
 
@@ -89,7 +90,7 @@ TEST_CASE("A pulse at a rigid end returns inverted", "[engine]") {
     const auto seen = firstRoundTrip({roundTrip, impedance}).atPlace;
     double worst = 0.0;
     for (std::size_t t = away; t < seen.size(); ++t)
-        worst = std::max(worst, std::abs(seen[t] + in[t - away]));
+        worst = support::worse(worst, std::abs(seen[t] + in[t - away]));
     std::cout << "rigid end: returning wave against -arriving, worst " << worst << " m/s of " << stepVelocity
               << " (allowed " << rounding << ")\n";
     CHECK(worst <= rounding * stepVelocity);
@@ -101,7 +102,7 @@ TEST_CASE("A pulse at a free end returns upright and moves the end twice as far"
     double worst = 0.0, leavingDisplacement = 0.0, endDisplacement = 0.0;
     for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
         const double endVelocity = motion.heard[t - away] / impedance; // what is heard of a free end is Z·v
-        worst = std::max(worst, std::abs(2.0 * motion.atPlace[t] - endVelocity));
+        worst = support::worse(worst, std::abs(2.0 * motion.atPlace[t] - endVelocity));
         if (t < roundTrip / 4 + away) {
             leavingDisplacement += motion.atPlace[t];
             endDisplacement += endVelocity;
@@ -119,17 +120,17 @@ TEST_CASE("A pulse at a free end returns upright and moves the end twice as far"
 TEST_CASE("A resistance reflects by its share, a matched one nothing", "[engine]") {
     const auto in = arrivingAtRigidEnd();
     double worst = 0.0, matched = 0.0;
-    for (const double ratio : {0.0, 0.1, 0.3, 1.0, 3.0, 10.0, 1000.0}) {
+    for (const double ratio : {1e-13, 0.1, 0.3, 1.0, 3.0, 10.0, 1000.0}) {
         const double resistance = ratio * impedance;
         const auto motion =
             firstRoundTrip({roundTrip, impedance}, {board::BridgeKind::resistance, {{resistance}}});
         const double reflected = (impedance - resistance) / (impedance + resistance);
         for (std::size_t t = away; t < motion.atPlace.size(); ++t) {
-            worst = std::max(worst, std::abs(motion.atPlace[t] - reflected * in[t - away]));
+            worst = support::worse(worst, std::abs(motion.atPlace[t] - reflected * in[t - away]));
             if (ratio == 1.0)
                 matched = std::max(matched, std::abs(motion.atPlace[t]));
             // The force on the bridge is R·v, v = in + out.
-            worst = std::max(worst, std::abs(motion.heard[t - away] / impedance -
+            worst = support::worse(worst, std::abs(motion.heard[t - away] / impedance -
                                              ratio * (1.0 + reflected) * in[t - away]));
         }
     }
