@@ -69,7 +69,8 @@ Worst compare(const design::InstrumentDescription& instrument, double sampleRate
     for (const auto& course : instrument.courses)
         for (const auto& string : course.strings) {
             support::RitzString ritz{string.description.speakingLength, string.statics.tension,
-                                     string.statics.linearDensity, string.statics.bendingStiffness, {}, placeOf(instrument, course)};
+                                     string.statics.linearDensity, string.statics.bendingStiffness, {},
+                                     placeOf(instrument, course)};
             for (int n = 1; n <= terms; ++n)
                 ritz.decayRates.push_back(string.partials.decayRate(n));
             strings.push_back(std::move(ritz));
