@@ -111,15 +111,17 @@ private:
                 auto& own = instrument.boards.emplace_back();
                 own.kind = static_cast<board::BridgeKind>(from.kind);
                 for (const auto& mode : from.modes)
-                    own.modes.push_back({mode.frequencyHz, mode.q, mode.massKg, radians(mode.angleDeg), mode.shape, mode.pan});
+                    own.modes.push_back({mode.frequencyHz, mode.q, mode.massKg, radians(mode.angleDeg), mode.shape,
+                                         mode.pan});
             } else {
                 board = instrument.bridges[static_cast<std::size_t>(bridgeNamed(from.board))].board;
             }
             if (from.kind == BridgeKind::rigid)
                 instrument.bridges.push_back({from.name, board});
             else
-                instrument.bridges.push_back(board::addBridge(from.name, board, instrument.boards[static_cast<std::size_t>(board)],
-                                                              from.points, from.resistanceKgS));
+                instrument.bridges.push_back(
+                    board::addBridge(from.name, board, instrument.boards[static_cast<std::size_t>(board)], from.points,
+                                     from.resistanceKgS));
         }
         for (auto& board : instrument.boards)
             for (auto& mode : board.modes)

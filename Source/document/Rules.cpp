@@ -150,7 +150,8 @@ private:
             if (shape != 0 && shape != static_cast<std::size_t>(points))
                 add(path + indexed(".modes", m) + ".shape",
                     " has " + std::to_string(shape) + " entries: must have one for each " +
-                        (alone ? "of the bridge's points, " : "point of the bridges on its board, ") + std::to_string(points));
+                        (alone ? "of the bridge's points, " : "point of the bridges on its board, ") +
+                        std::to_string(points));
         }
     }
 

@@ -1,4 +1,5 @@
-// Where strings meet their board, over one bridge or several: modes, and a resistance at each point, exact at every sample.
+// Where strings meet their board, over one bridge or several: modes, and a resistance at each point, exact at every
+// sample.
 #pragma once
 
 #include "dsp/board/Soundboard.h"
@@ -13,9 +14,10 @@ namespace hitchpin::engine {
 enum Direction { across, into };
 
 /// Constructing allocates; the rest is real-time safe. The bridges of a board are one junction, with a component for
-/// each of their points in each direction in which something lets it move; its velocity v and the strings' pull F obey v = Y0·F + h, with h from the modes'
-/// states, and F = S − Z·v, with Z the strings' impedances and S = 2ΣZ·in: so (1 + Y0·Z)·v = Y0·S + h.
-/// Passive: what the strings lose, Σ Z(in² − out²), is Fv and goes into modes and resistance (ModeFilter.h).
+/// each of their points in each direction in which something lets it move; its velocity v and the strings' pull F obey
+/// v = Y0·F + h, with h from the modes' states, and F = S − Z·v, with Z the strings' impedances and S = 2ΣZ·in: so (1 +
+/// Y0·Z)·v = Y0·S + h. Passive: what the strings lose, Σ Z(in² − out²), is Fv and goes into modes and resistance
+/// (ModeFilter.h).
 class Bridge {
 public:
     Bridge(const design::BoardDesign&, double sampleRate);

@@ -39,6 +39,21 @@ board::Board soundboard(int modes, int points, unsigned seed) {
     return board;
 }
 
+/// Where a course stands, worked out here: the points of the bridges follow each other, evenly spread over each.
+board::Sharing placeOf(const design::InstrumentDescription& instrument, const design::CourseDescription& course) {
+    const auto bridge = static_cast<std::size_t>(course.bridge);
+    board::Sharing place;
+    for (std::size_t b = 0; b < bridge; ++b)
+        place.first += instrument.bridges[b].points;
+    const int gaps = instrument.bridges[bridge].points - 1;
+    for (double along = course.bridgePosition * gaps; along > 0.0; along -= 1.0) {
+        place.ofSecond = std::min(along, 1.0);
+        place.ofFirst = 1.0 - place.ofSecond;
+        place.first += along > 1.0 ? 1 : 0;
+    }
+    return place;
+}
+
 struct Worst {
     double cents = 0.0, decay = 0.0;
     int poles = 0;
@@ -55,8 +70,7 @@ Worst compare(const design::InstrumentDescription& instrument, double sampleRate
         for (const auto& string : course.strings) {
             support::RitzString ritz{string.description.speakingLength, string.statics.tension,
                                      string.statics.linearDensity, string.statics.bendingStiffness, {},
-                                     board::sharing(instrument.bridges[static_cast<std::size_t>(course.bridge)],
-                                                    course.bridgePosition)};
+                                     placeOf(instrument, course)};
             for (int n = 1; n <= terms; ++n)
                 ritz.decayRates.push_back(string.partials.decayRate(n));
             strings.push_back(std::move(ritz));
@@ -134,8 +148,9 @@ TEST_CASE("Two bridges on one board have the poles of their masses and springs",
     }
     for (const int modes : {3, 8, 20}) {
         auto instrument = support::realDescription(strings, soundboard(modes, 3, 17u));
-        instrument.bridges = {{"first", 0, 0, 1}, {"second", 0, 1, 2}};
-        instrument.boards.front().points[0].resistance = 90.0;
+        board::Board& board = instrument.boards.front();
+        board.points.clear();
+        instrument.bridges = {board::addBridge("first", 0, board, 1, 90.0), board::addBridge("second", 0, board, 2, 150.0)};
         for (std::size_t i = 0; i < instrument.courses.size(); ++i)
             instrument.courses[i].bridgePosition = (static_cast<double>(i) + 0.5) / 8.0;
         report("eight wires on two bridges, board of " + std::to_string(modes), compare(instrument, 48000.0, 16, 800.0));
