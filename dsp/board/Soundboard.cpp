@@ -1,6 +1,6 @@
 #include "dsp/board/Soundboard.h"
 
-#include <Eigen/LU>
+#include "dsp/base/Elimination.h"
 
 #include <algorithm>
 #include <cmath>
@@ -72,43 +72,39 @@ MobilityAt::MobilityAt(const Board& board, const Sharing& place, const std::vect
     }
 }
 
-/// On the stack where the board has few points, as boards have.
-template <class Matrix>
-Mobility MobilityAt::loaded(Complex s) const {
-    const auto size = static_cast<Eigen::Index>(remainder_.size()), points = size / 2;
-    Matrix mobility = Matrix::Zero(size, size);
-    for (Eigen::Index i = 0; i < size; ++i)
-        mobility(i, i) = remainder_[static_cast<std::size_t>(i)];
+Mobility MobilityAt::operator()(Complex s) const {
+    const std::size_t size = remainder_.size(), points = here_.size();
+    if (points == 0)
+        return {};
+    std::vector<Complex> mobility(size * size);
+    for (std::size_t i = 0; i < size; ++i)
+        mobility[i * size + i] = remainder_[i];
     for (const Part& part : parts_) {
         const double w = part.frequency;
         const Complex y = s / (part.mass * (s * s + s * (w / part.q) + w * w));
-        const Eigen::Map<const Eigen::VectorXd> motion(part.motion.data(), size);
-        for (Eigen::Index j = 0; j < size; ++j)
-            mobility.col(j) += (y * motion[j]) * motion;
+        for (std::size_t i = 0; i < size; ++i)
+            for (std::size_t j = 0; j < size; ++j)
+                mobility[i * size + j] += y * (part.motion[i] * part.motion[j]);
     }
     if (loaded_) {
-        const Eigen::Map<const Eigen::MatrixXd> load(load_.data(), size, size);
-        const Matrix inside = Matrix::Identity(size, size) + mobility * load.cast<Complex>();
-        mobility = Matrix(inside.partialPivLu().solve(mobility));
+        std::vector<Complex> inside(size * size);
+        for (std::size_t i = 0; i < size; ++i)
+            for (std::size_t j = 0; j < size; ++j) {
+                Complex sum = i == j ? 1.0 : 0.0;
+                for (std::size_t k = 0; k < size; ++k)
+                    sum += mobility[i * size + k] * load_[k * size + j];
+                inside[i * size + j] = sum;
+            }
+        eliminate(inside.data(), mobility.data(), size, size);
     }
-    const Eigen::Map<const Eigen::VectorXd> here(here_.data(), points);
-    const auto between = [&](Eigen::Index row, Eigen::Index column) {
+    const auto between = [&](std::size_t row, std::size_t column) {
         Complex sum = 0.0;
-        for (Eigen::Index i = 0; i < points; ++i)
-            for (Eigen::Index j = 0; j < points; ++j)
-                sum += here[i] * here[j] * mobility(row + i, column + j);
+        for (std::size_t i = 0; i < points; ++i)
+            for (std::size_t j = 0; j < points; ++j)
+                sum += here_[i] * here_[j] * mobility[(row + i) * size + column + j];
         return sum;
     };
     return {between(0, 0), between(0, points), between(points, points)};
-}
-
-Mobility MobilityAt::operator()(Complex s) const {
-    if (here_.empty())
-        return {};
-    constexpr int few = 8;
-    if (here_.size() <= few)
-        return loaded<Eigen::Matrix<Complex, Eigen::Dynamic, Eigen::Dynamic, 0, 2 * few, 2 * few>>(s);
-    return loaded<Eigen::MatrixXcd>(s);
 }
 
 } // namespace hitchpin::board

@@ -77,9 +77,6 @@ public:
     Mobility operator()(std::complex<double> s) const;
 
 private:
-    template <class Matrix>
-    Mobility loaded(std::complex<double> s) const;
-
     struct Part {
         double frequency, q, mass; // of a mode, rad/s
         std::vector<double> motion; // at each component: all points across, then all into

@@ -1,9 +1,10 @@
 #include "dsp/design/CoupledPoles.h"
 
+#include "dsp/base/Elimination.h"
 #include "dsp/design/LoopModel.h"
 #include "dsp/design/ModeFilter.h"
 
-#include <Eigen/LU>
+#include <Eigen/Core>
 
 #include <algorithm>
 #include <array>
@@ -16,6 +17,7 @@ namespace hitchpin::design {
 namespace {
 
 using Complex = std::complex<double>;
+using Matrix = Eigen::Matrix<Complex, Eigen::Dynamic, Eigen::Dynamic, Eigen::RowMajor>;
 constexpr double pi = std::numbers::pi;
 constexpr int mostRounds = 96;
 /// A root that has not settled within so many rounds has lost its way among the others, and begins anew elsewhere.
@@ -96,11 +98,11 @@ public:
 
     /// Where a pole of string `i` goes at first order: one shift for each direction.
     std::array<Complex, 2> firstShifts(const Alike& string, Complex p) const {
-        const Eigen::MatrixXcd y = mobility(p, nullptr);
+        const Matrix y = mobility(p, nullptr);
         const double impedance = string.impedance;
         const Complex byTurn = 2.0 / slopeOf(string, p) * impedance;
         const auto here = [&](Eigen::Index row, Eigen::Index column) {
-            return (string.weights.transpose() * y.block(row, column, points_, points_) * string.weights).value();
+            return string.weights.dot(y.block(row, column, points_, points_).lazyProduct(string.weights).eval());
         };
         if (!movesAcross_)
             return {byTurn * here(0, 0), 0.0};
@@ -112,7 +114,7 @@ public:
     /// d ln g/dp of g = det(1 + Y·Z)·∏(1 − L)·∏(modes' denominators), which has all roots and no poles.
     Complex logSlope(Complex p) const {
         const Eigen::Index size = remainder_.size();
-        Eigen::MatrixXcd slope, y = mobility(p, &slope), z = Eigen::MatrixXcd::Zero(size, size), zSlope = z;
+        Matrix slope, y = mobility(p, &slope), z = Matrix::Zero(size, size), zSlope = z;
         Complex sum = 0.0;
         const Complex s = std::tanh(0.5 * p);
         const double directions = movesAcross_ ? 2.0 : 1.0;
@@ -132,8 +134,11 @@ public:
             const auto [a, b] = polynomial(mode.filter);
             sum += (2.0 * s + a) / (s * s + a * s + b) * 0.5 * (1.0 - s * s);
         }
-        const Eigen::MatrixXcd inside = Eigen::MatrixXcd::Identity(size, size) + y * z;
-        return sum + inside.partialPivLu().solve(slope * z + y * zSlope).trace();
+        // Small: products written out are quicker than blocked ones.
+        Matrix inside = Matrix::Identity(size, size) + y.lazyProduct(z);
+        Matrix moved = slope.lazyProduct(z) + y.lazyProduct(zSlope);
+        eliminate(inside.data(), moved.data(), static_cast<std::size_t>(size), static_cast<std::size_t>(size));
+        return sum + moved.trace();
     }
 
 private:
@@ -148,8 +153,8 @@ private:
     }
     static Complex slopeOf(const Alike& string, Complex p) { return logLoopSlope(string.loop, std::tanh(0.5 * p)); }
 
-    Eigen::MatrixXcd mobility(Complex p, Eigen::MatrixXcd* slope) const {
-        Eigen::MatrixXcd y = remainder_.cast<Complex>().asDiagonal();
+    Matrix mobility(Complex p, Matrix* slope) const {
+        Matrix y = remainder_.cast<Complex>().asDiagonal();
         if (slope != nullptr)
             slope->setZero(y.rows(), y.cols());
         const Complex s = std::tanh(0.5 * p);

@@ -249,6 +249,11 @@ void fitLevel(PlaceDesign& place, const string::Partials& partials, double sampl
     }
     if (most < flatLevel)
         return;
+    // What counts is the level itself, not its share of how far it falls; as much above 6 kHz as below.
+    for (LoopTarget& target : targets) {
+        target.weight = std::max(0.1, target.loss / most);
+        target.weight *= target.weight / lossWeight(target);
+    }
     const auto fits = [&](const LoopModel& model) {
         return std::all_of(targets.begin(), targets.end(), [&](const LoopTarget& target) {
             return std::abs(logLoss(model, target.s).real() + target.loss) <=

@@ -1,5 +1,7 @@
 #include "dsp/engine/Bridge.h"
 
+#include "dsp/base/Elimination.h"
+
 #include <algorithm>
 #include <cmath>
 #include <numbers>
@@ -53,7 +55,7 @@ Bridge::Bridge(const design::BoardDesign& design, double sampleRate)
                 atOnce_[i * size_ + j] += modes_[m].filter.g * motion_[m * size_ + i] * motion_[m * size_ + j];
     load_.assign(size_ * size_, -1.0); // none: the first is solved
     newLoad_ = byPull_ = byState_ = std::vector<double>(size_ * size_, 0.0);
-    work_.assign(2 * size_ * size_, 0.0);
+    work_.assign(size_ * size_, 0.0);
     drive_.assign(size_ * longestChunk, 0.0);
     velocity_ = drive_;
     heard_.assign(sources_.size() * longestChunk, 0.0);
@@ -121,44 +123,26 @@ void Bridge::addLoad(Direction direction, const board::Sharing& place, double im
     }
 }
 
-/// Gauss and Jordan on [1 + Y0·Z | 1], whose eigenvalues are all at least 1.
+/// 1 + Y0·Z has eigenvalues of at least 1 only.
 void Bridge::endLoad() noexcept {
     if (newLoad_ == load_)
         return;
     load_ = newLoad_; // same size: no allocation
-    const std::size_t n = size_, width = 2 * n;
+    const std::size_t n = size_;
     for (std::size_t i = 0; i < n; ++i)
         for (std::size_t j = 0; j < n; ++j) {
             double sum = i == j ? 1.0 : 0.0;
+            byState_[i * n + j] = sum;
             for (std::size_t k = 0; k < n; ++k)
                 sum += atOnce_[i * n + k] * load_[k * n + j];
-            work_[i * width + j] = sum;
-            work_[i * width + n + j] = i == j ? 1.0 : 0.0;
+            work_[i * n + j] = sum;
         }
-    for (std::size_t c = 0; c < n; ++c) {
-        std::size_t pivot = c;
-        for (std::size_t i = c + 1; i < n; ++i)
-            if (std::abs(work_[i * width + c]) > std::abs(work_[pivot * width + c]))
-                pivot = i;
-        if (pivot != c)
-            std::swap_ranges(&work_[c * width], &work_[c * width] + width, &work_[pivot * width]);
-        const double scale = 1.0 / work_[c * width + c];
-        for (std::size_t j = 0; j < width; ++j)
-            work_[c * width + j] *= scale;
-        for (std::size_t i = 0; i < n; ++i) {
-            const double times = work_[i * width + c];
-            if (i == c || times == 0.0)
-                continue;
-            for (std::size_t j = 0; j < width; ++j)
-                work_[i * width + j] -= times * work_[c * width + j];
-        }
-    }
+    eliminate(work_.data(), byState_.data(), n, n);
     for (std::size_t i = 0; i < n; ++i)
         for (std::size_t j = 0; j < n; ++j) {
-            byState_[i * n + j] = work_[i * width + n + j];
             double sum = 0.0;
             for (std::size_t k = 0; k < n; ++k)
-                sum += work_[i * width + n + k] * atOnce_[k * n + j];
+                sum += byState_[i * n + k] * atOnce_[k * n + j];
             byPull_[i * n + j] = sum;
         }
 }

@@ -83,7 +83,7 @@ private:
     std::vector<double> load_, newLoad_;
     std::vector<double> byPull_;   ///< (1 + Y0·Z)⁻¹·Y0
     std::vector<double> byState_;  ///< (1 + Y0·Z)⁻¹
-    std::vector<double> work_;     ///< components × 2·components
+    std::vector<double> work_;     ///< components²
     std::vector<double> drive_, velocity_, heard_; ///< rows of longestChunk
     std::vector<double> sample_;   ///< 3 × components: S, h, v of one sample
     std::vector<Source> sources_;
