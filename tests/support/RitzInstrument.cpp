@@ -1,8 +1,8 @@
 #include "tests/support/RitzInstrument.h"
 
-#include <Eigen/Cholesky>
+#include "dsp/base/Elimination.h"
+
 #include <Eigen/Eigenvalues>
-#include <Eigen/LU>
 
 #include <algorithm>
 #include <cmath>
@@ -82,9 +82,13 @@ RitzMatrices ritzMatrices(const board::Board& board, const std::vector<RitzStrin
 /// d/dt (q, q̇) = first·(q, q̇).
 Eigen::MatrixXd firstOrder(const RitzMatrices& of) {
     const Eigen::Index size = of.m.rows();
-    const Eigen::LLT<Eigen::MatrixXd> mass(of.m);
-    Eigen::MatrixXd first(2 * size, 2 * size);
-    first << Eigen::MatrixXd::Zero(size, size), Eigen::MatrixXd::Identity(size, size), -mass.solve(of.k), -mass.solve(of.c);
+    using RowMajor = Eigen::Matrix<double, Eigen::Dynamic, Eigen::Dynamic, Eigen::RowMajor>;
+    RowMajor mass = of.m, forces(size, 2 * size);
+    forces << of.k, of.c;
+    eliminate(mass.data(), forces.data(), static_cast<std::size_t>(size), static_cast<std::size_t>(2 * size));
+    Eigen::MatrixXd first = Eigen::MatrixXd::Zero(2 * size, 2 * size);
+    first.topRightCorner(size, size).setIdentity();
+    first.bottomRows(size) = -forces;
     return first;
 }
 
@@ -112,10 +116,13 @@ double ritzEnergyAfter(const board::Board& board, const std::vector<RitzString>&
         state[term] = std::sin(n * std::numbers::pi * (1.0 - ratioFromBridge)) / of.k(term, term);
     }
     const Eigen::EigenSolver<Eigen::MatrixXd> solver(firstOrder(of));
-    Eigen::VectorXcd shares = solver.eigenvectors().partialPivLu().solve(state);
+    const Eigen::MatrixXcd vectors = solver.eigenvectors();
+    Eigen::Matrix<std::complex<double>, Eigen::Dynamic, Eigen::Dynamic, Eigen::RowMajor> rows = vectors;
+    Eigen::VectorXcd shares = state;
+    eliminate(rows.data(), shares.data(), static_cast<std::size_t>(2 * size), 1);
+    Eigen::VectorXd then = Eigen::VectorXd::Zero(2 * size);
     for (Eigen::Index i = 0; i < shares.size(); ++i)
-        shares[i] *= std::exp(solver.eigenvalues()[i] * seconds);
-    const Eigen::VectorXd then = (solver.eigenvectors() * shares).real();
+        then += (std::exp(solver.eigenvalues()[i] * seconds) * shares[i] * vectors.col(i)).real();
     double energy = 0.0;
     for (std::size_t i = 0; i < strings[heard].decayRates.size(); ++i) {
         const auto term = other + static_cast<Eigen::Index>(i);
