@@ -78,9 +78,9 @@ int main() {
                 continue;
             const auto retuned = design::retuneLoop(*loop, other, settings);
             const auto place = design::makePlace(partials, *loop, design::PlaceUse::plucked, 0.2);
-            const double make = bestOf(
+            const double make = medianOf(
                 5, [&] { kept = design::makePlace(partials, *loop, design::PlaceUse::plucked, 0.2).gain; });
-            const double again = bestOf(
+            const double again = medianOf(
                 5, [&] { kept = design::makePlace(other, *retuned, design::PlaceUse::plucked, 0.2, &place).gain; });
             std::printf("%-20s %-10s %8.2f %8.1f %8.2f %8.2f  %2zu %8.3f %9.1f\n", string.name,
                         quality == design::Quality::live ? "live" : "reference", make, make / unit, again, again / unit,

@@ -30,6 +30,8 @@ constexpr double leastLevel = 0.1;
 constexpr int countedPartials = 20;
 /// Between the engine and the same filters evaluated at the poles: what the window lets in from other partials.
 constexpr double agreementDb = 0.002;
+/// On the bar-like string the partials lie between the zeros of the fading step (Release.h), which are at harmonics.
+constexpr double agreementOfBarDb = 0.2;
 
 bool whole() { return std::getenv("HITCHPIN_LONG_TESTS") != nullptr; }
 
@@ -164,7 +166,7 @@ TEST_CASE("What sounds has the levels and the missing partials of its places", "
         INFO(one.string << " plucked at " << one.plucked << ", heard at " << one.heard);
         CHECK(heard.levelDb <= levelGoalDb);
         CHECK(heard.nullDb <= nullGoalDb);
-        CHECK(heard.agreementDb <= agreementDb);
+        CHECK(heard.agreementDb <= (string.inharmonicity > 0.01 ? agreementOfBarDb : agreementDb));
         std::printf("  %-20s at %.3f, heard at %.2f  %8.3f %11.1f %10.4f\n", one.string, one.plucked, one.heard,
                     heard.levelDb, heard.nullDb, heard.agreementDb);
         all.levelDb = std::max(all.levelDb, heard.levelDb);
