@@ -30,8 +30,6 @@ constexpr double leastLevel = 0.1;
 constexpr int countedPartials = 20;
 /// Between the engine and the same filters evaluated at the poles: what the window lets in from other partials.
 constexpr double agreementDb = 0.002;
-/// On the bar-like string the partials lie between the zeros of the fading step (Release.h), which are at harmonics.
-constexpr double agreementOfBarDb = 0.2;
 
 bool whole() { return std::getenv("HITCHPIN_LONG_TESTS") != nullptr; }
 
@@ -150,9 +148,13 @@ TEST_CASE("What sounds has the levels and the missing partials of its places", "
                             {"steel E4 plain", 0.8, 0.0},   {"steel E2 wound", 0.5, 0.0},   {"nylon C3", 1.0 / 3.0, 0.0},
                             {"brass C3, nut free", 0.2, 0.0}, {"piano A2", 0.11, 0.25},     {"piano C8", 0.13, 0.03},
                             {"steel E4 plain", 0.13, 0.9},  {"brass C3, nut free", 0.13, 0.6}};
+    // All but the bar-like string: the window that tells partials apart is made for nearly whole multiples, and lets the
+    // others of a bar in. Its places are judged at the poles (PlaceTests).
     if (whole())
         for (const auto& string : yardstick::strings())
             for (const double ratio : {0.03, 0.05, 0.1, 0.13, 1.0 / 7.0, 0.2, 0.25, 1.0 / 3.0, 0.4, 0.5}) {
+                if (string.inharmonicity > 0.01)
+                    continue;
                 cases.push_back({string.name, ratio, 0.0});
                 cases.push_back({string.name, 0.23, ratio});
             }
@@ -166,7 +168,7 @@ TEST_CASE("What sounds has the levels and the missing partials of its places", "
         INFO(one.string << " plucked at " << one.plucked << ", heard at " << one.heard);
         CHECK(heard.levelDb <= levelGoalDb);
         CHECK(heard.nullDb <= nullGoalDb);
-        CHECK(heard.agreementDb <= (string.inharmonicity > 0.01 ? agreementOfBarDb : agreementDb));
+        CHECK(heard.agreementDb <= agreementDb);
         std::printf("  %-20s at %.3f, heard at %.2f  %8.3f %11.1f %10.4f\n", one.string, one.plucked, one.heard,
                     heard.levelDb, heard.nullDb, heard.agreementDb);
         all.levelDb = std::max(all.levelDb, heard.levelDb);
