@@ -204,8 +204,9 @@ std::vector<JudgedString> randomStrings(std::size_t count) {
 
 } // namespace
 
-// Turned red by: a sample of delay too much in the engine's loop, the loss of a period of f1 for that of a round trip
-// (f1 for df/dn), a wrong sign in a second-order shelf.
+// Turned red by: a sample of delay too much in the engine's loop, the energy's decay for the amplitude's, a wrong sign in
+// a second-order shelf. (Not by the loss of a period for that of a round trip: the last fit is at the damped poles, which
+// need no such target.)
 TEST_CASE("accuracy of the yardstick strings", "[design]") {
     Table table;
     for (const auto& string : yardstick::strings())
