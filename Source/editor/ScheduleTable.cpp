@@ -22,19 +22,21 @@ struct Column {
 
 juce::String fromUtf8(const std::string& text) { return juce::String::fromUTF8(text.c_str()); }
 
-constexpr int warningsColumn = 10;
+constexpr int warningsColumn = 12;
 
 const std::array<Column, warningsColumn> columns{{
-    {" Note", 46, [](const report::ScheduleRow& r) { return fromUtf8(r.note); }},
-    {"Pitch Hz", 62, [](const report::ScheduleRow& r) { return juce::String(r.pitchHz, r.pitchHz < 1000 ? 2 : 1); }},
-    {"Strings", 50, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
-    {"Length mm", 56, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
-    {" Core", 136, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
-    {" Windings", 166, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
-    {"Tension N", 58, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.tensionN)); }},
-    {"Share of breaking", 60, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
-    {"Semitones to breaking", 68, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
-    {" Warnings", 150, wordsOf},
+    {" Note", 42, [](const report::ScheduleRow& r) { return fromUtf8(r.note); }},
+    {"Pitch Hz", 58, [](const report::ScheduleRow& r) { return juce::String(r.pitchHz, r.pitchHz < 1000 ? 2 : 1); }},
+    {"Strings", 46, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
+    {"Length mm", 54, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
+    {" Core", 124, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
+    {" Windings", 150, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
+    {"Tension N", 52, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.tensionN)); }},
+    {"Share of breaking", 56, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
+    {"Semitones to breaking", 62, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
+    {"Rings on board s", 54, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.boardT60S.front())); }},
+    {"Rings alone s", 50, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.decayT60S.front())); }},
+    {" Warnings", 110, wordsOf},
 }};
 
 } // namespace

@@ -101,7 +101,7 @@ PartialOnBoard partialOnBoard(const string::Partials& partials, double impedance
 Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt& mobility,
                                   int partialCount) {
     constexpr int mostRounds = 12;
-    constexpr double exact = 1e-9, reachedCents = 1e-6;
+    constexpr double exact = 1e-8, reachedCents = 1e-3; // wound strings with bare ends meet a pitch to 1e-5
     TunedOnBoard tuned{alone};
     double ownHz = hz;
     // What pitch of its own a string needs that is to sound at `hz` follows without a search, but for what its
@@ -111,8 +111,13 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
         const double roundTrip = 1.0 / now.partials.slope(1.0);
         const Pull pull(mobility, now.statics.impedance, roundTrip, Motion::mostlyInto);
         Complex s(-now.partials.decayRate(1.0), 2.0 * pi * hz);
-        for (int inner = 0; inner < 4; ++inner) // Y hardly depends on the decay
-            s.real(-now.partials.decayRate(1.0) - pull(s).real());
+        // The decay at that pitch, by Newton: next to a resonance Y depends on it.
+        for (int inner = 0; inner < 30; ++inner) {
+            const double step = (s.real() + now.partials.decayRate(1.0) + pull(s).real()) / (1.0 + pull.slope(s).real());
+            s.real(s.real() - step);
+            if (!(std::abs(step) > 1e-13 * s.imag()))
+                break;
+        }
         const double wanted = hz + pull(s).imag() / (2.0 * pi);
         if (!(std::abs(cents(hz, wanted)) <= 2.0 * wolfCents))
             break;
