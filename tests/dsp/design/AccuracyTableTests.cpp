@@ -227,7 +227,7 @@ TEST_CASE("accuracy of random strings", "[design][random]") {
     table.print((std::to_string(count) + " random strings at four rates, live and reference").c_str());
 }
 
-// Turned red by: a second-order shelf that the engine leaves out, or steps with a12 for a21.
+// Turned red by: a second-order shelf that the engine steps with a12 for a21.
 TEST_CASE("accuracy: poles of the loop and sound of the engine agree", "[design][engine]") {
     struct Heard {
         const char* name;

@@ -147,7 +147,7 @@ TEST_CASE("A string makes one on the other bridge ring through their board, and 
     CHECK(heard(false) == 0.0);
 }
 
-// Turned red by: a mode's angle left out, cosine and sine changed over.
+// Turned red by: a mode's angle left out.
 TEST_CASE("A string whirls where a mode of the board lies at an angle", "[engine][board]") {
     const auto across = [](double angle) {
         Engine engine(support::realInstrument({RealString{"music wire", 0.65, 0.4e-3, 196.0}}, oneMode(205.0, 30.0, 0.3, angle)));
