@@ -1,6 +1,7 @@
 #include "Source/console/AllPartials.h"
 
 #include "Source/console/LongWork.h"
+#include "Source/console/PartialsTable.h"
 #include "dsp/analysis/CheckPoles.h"
 #include "dsp/analysis/Measure.h"
 #include "dsp/design/CoupledPoles.h"
@@ -11,24 +12,22 @@
 #include <algorithm>
 #include <cmath>
 #include <iostream>
+#include <numbers>
 
 namespace hitchpin::console {
 
 namespace {
 
-constexpr double sampleRate = 48000.0;
 constexpr double highestHz = 5000.0;
 constexpr double listenedFor = 5.0; // s
-/// Plucked off every simple fraction, and in a direction of its own each, so that all partials sound and none alike.
-constexpr double pluckedAt = 0.0517, angleStep = 0.37;
+/// Plucked in a direction of its own each, so that no two sound alike.
+constexpr double angleStep = 0.37;
 /// Poles a little higher sound too, and have to be known for those at the border.
 constexpr double beyondHz = 200.0;
 /// The check: together the predicted partials leave no more of any band's energy unexplained, dB…
 constexpr double mostUnexplained = -80.0;
 /// …and each that can be told from its neighbours agrees so well. Told apart: its own error is this much smaller.
 constexpr double mostCents = 0.05, mostDecay = 0.01, surely = 30.0;
-
-juce::String column(double value, int decimals, int width) { return juce::String(value, decimals).paddedLeft(' ', width); }
 
 std::string whose(const design::InstrumentDescription& instrument, const design::InstrumentDesign& design,
                   const design::CoupledPole& pole, const board::Board& board) {
@@ -110,8 +109,8 @@ void printBoard(const design::InstrumentDescription& instrument, const std::shar
         const double left = 10.0 * std::log10(found.unexplained);
         tally.worstUnexplained = std::max(tally.worstUnexplained, left);
         bool off = left > mostUnexplained;
-        const double centsError = 1200.0 / std::log(2.0) * found.frequencyError / pole.frequency;
-        if (surely * centsError > mostCents || surely * found.decayError > mostDecay * pole.decayRate) {
+        const double centsError = 1200.0 / std::log(2.0) * found.error / (2.0 * std::numbers::pi * pole.frequency);
+        if (surely * centsError > mostCents || surely * found.error > mostDecay * pole.decayRate) {
             ++tally.tooNear;
             std::cout << "   too near others or weak " << t60.substring(3) << "           ";
         } else {

@@ -1,6 +1,7 @@
 #include "Source/console/AllPartials.h"
 #include "Source/console/Command.h"
 #include "Source/console/LongWork.h"
+#include "Source/console/PartialsTable.h"
 #include "Source/console/Reading.h"
 #include "dsp/analysis/Measure.h"
 #include "dsp/engine/Engine.h"
@@ -14,11 +15,8 @@ namespace hitchpin::console {
 
 namespace {
 
-constexpr double sampleRate = 48000.0;
 constexpr double highestHz = 10000.0;
 constexpr int mostPartials = 120;
-/// A place that is no simple fraction, so that no partial within the table has a node there.
-constexpr double pluckedAt = 0.0517;
 constexpr double shortest = 2.0, longest = 12.0; // s of sound
 /// What falls by 60 dB within so few periods has no pitch to measure.
 constexpr double fewestPeriods = 30.0;
@@ -44,10 +42,6 @@ design::InstrumentDescription alone(const design::CourseDescription& course, str
     one.strings = {std::move(string)};
     instrument.courses = {std::move(one)};
     return instrument;
-}
-
-juce::String column(double value, int decimals, int width) {
-    return juce::String(value, decimals).paddedLeft(' ', width);
 }
 
 Exit run(const Arguments& arguments) {

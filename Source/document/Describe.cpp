@@ -235,7 +235,7 @@ private:
             const auto index = static_cast<std::size_t>(s);
             const auto path = placed.path + (from.each.empty() ? "" : ".each[" + std::to_string(s) + "]");
             // Strings that are alike in everything are worked out once.
-            if (s > 0 && from.each.empty() && detuneOf(from, index) == detuneOf(from, index - 1)) {
+            if (likeTheOneBefore(from, index)) {
                 to.strings.push_back(to.strings.back());
                 continue;
             }
@@ -250,6 +250,9 @@ private:
         described_.instrument.courses.push_back(std::move(to));
     }
 
+    static bool likeTheOneBefore(const Course& course, std::size_t string) {
+        return string > 0 && course.each.empty() && detuneOf(course, string) == detuneOf(course, string - 1);
+    }
     static double detuneOf(const Course& course, std::size_t string) {
         return course.detuneCents.empty() ? 0.0 : course.detuneCents[string];
     }
@@ -265,8 +268,7 @@ private:
             for (std::size_t s = 0; s < strings.size(); ++s) {
                 if (stringOf(placed[c].course, s).tensionN || strings[s].description.ends.bridge == string::End::free)
                     continue;
-                if (s > 0 && placed[c].course.each.empty() &&
-                    detuneOf(placed[c].course, s) == detuneOf(placed[c].course, s - 1)) {
+                if (likeTheOneBefore(placed[c].course, s)) {
                     strings[s] = strings[s - 1];
                     continue;
                 }
@@ -274,7 +276,7 @@ private:
                                                      design::mobilityFor(alone, c, s), partialCount_),
                                  placed[c].path);
                 if (tuned)
-                    strings[s] = std::move(tuned->strung);
+                    strings[s] = std::move(*tuned);
             }
         }
     }

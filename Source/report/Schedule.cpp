@@ -82,7 +82,7 @@ ScheduleRow row(const design::InstrumentDescription& described, std::size_t inde
             continue;
         row.pitchHz = onBoard.frequency;
         row.boardShiftCents = onBoard.shift;
-        if (onBoard.share < board::leastShare || std::abs(onBoard.shift) > board::wolfCents)
+        if (board::isWolf(onBoard))
             row.warnings.push_back(wolfInWords(described, course, onBoard));
     }
     return row;

@@ -77,10 +77,8 @@ std::vector<std::pair<std::size_t, CheckedPole>> checkBand(const Band& band, con
         pole.measured = {(band.centre + q.imag()) * sampleRate / (2.0 * pi), -q.real() * sampleRate};
         const Complex weight = solution[k] * std::exp(-q * static_cast<double>(band.first)) / band.response(q);
         pole.amplitude = 2.0 * std::abs(weight);
-        const double spread = std::sqrt(variance) * scale[count + k] * inverse.row(count + k).norm() /
-                              std::abs(solution[k]) / static_cast<double>(band.step) * sampleRate;
-        pole.frequencyError = spread / (2.0 * pi);
-        pole.decayError = spread;
+        pole.error = std::sqrt(variance) * scale[count + k] * inverse.row(count + k).norm() / std::abs(solution[k]) /
+                     static_cast<double>(band.step) * sampleRate;
         pole.unexplained = unexplained;
         checked.emplace_back(member.index, pole);
     }
@@ -94,7 +92,7 @@ std::vector<CheckedPole> checkPoles(std::span<const double> sound, double sample
     const double none = std::numeric_limits<double>::infinity();
     std::vector<CheckedPole> checked;
     for (const Pole& pole : predicted)
-        checked.push_back({pole, 0.0, none, none, 1.0});
+        checked.push_back({pole, 0.0, none, 1.0});
     if (predicted.empty())
         return checked;
     const double gapHz = 2.0 * measuredHz, toRadians = 2.0 * pi / sampleRate;

@@ -14,10 +14,9 @@ struct Pole {
 struct CheckedPole {
     Pole measured;
     double amplitude = 0.0; ///< at the first sample, in the sound's unit
-    /// Standard deviation of both, as what the fit leaves unexplained lets them be known; large where a pole is too weak
-    /// or too near to others to be told apart.
-    double frequencyError = 0.0; ///< Hz
-    double decayError = 0.0;     ///< 1/s
+    /// Standard deviation of the decay rate and of 2π times the frequency alike, 1/s, as what the fit leaves unexplained
+    /// lets them be known; large where a pole is too weak or too near to others to be told apart.
+    double error = 0.0;
     /// Share of the energy of its band that all predicted poles together, unmoved, leave unexplained.
     double unexplained = 1.0;
 };

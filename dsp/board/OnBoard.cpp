@@ -98,16 +98,19 @@ PartialOnBoard partialOnBoard(const string::Partials& partials, double impedance
     return found;
 }
 
-Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt& mobility,
-                                  int partialCount) {
+bool isWolf(const PartialOnBoard& first) noexcept {
+    return std::abs(first.shift) > wolfCents || first.share < leastShare;
+}
+
+Result<string::Strung> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt& mobility,
+                                    int partialCount) {
     constexpr int mostRounds = 12;
     constexpr double exact = 1e-8, reachedCents = 1e-3; // wound strings with bare ends meet a pitch to 1e-5
-    TunedOnBoard tuned{alone};
+    string::Strung now = alone;
     double ownHz = hz;
     // What pitch of its own a string needs that is to sound at `hz` follows without a search, but for what its
     // tension does to its impedance and decay.
     for (int round = 0; round < mostRounds; ++round) {
-        const string::Strung& now = tuned.strung;
         const double roundTrip = 1.0 / now.partials.slope(1.0);
         const Pull pull(mobility, now.statics.impedance, roundTrip, Motion::mostlyInto);
         Complex s(-now.partials.decayRate(1.0), 2.0 * pi * hz);
@@ -127,20 +130,13 @@ Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const 
         auto next = string::strungToPitch(alone.description, ownHz, partialCount);
         if (!next)
             return next.error();
-        tuned.strung = std::move(next).value();
+        now = std::move(next).value();
     }
     // Next to a strong resonance no tension brings it there: the string's pole jumps over that pitch.
-    const string::Strung& now = tuned.strung;
     const PartialOnBoard reached = partialOnBoard(now.partials, now.statics.impedance, mobility, 1);
-    tuned.wolf = !(std::abs(cents(reached.frequency, hz)) < reachedCents) || std::abs(reached.shift) > wolfCents ||
-                 reached.share < leastShare;
-    if (!tuned.wolf)
-        return tuned;
-    auto plain = string::strungToPitch(alone.description, hz, partialCount);
-    if (!plain)
-        return plain.error();
-    tuned.strung = std::move(plain).value();
-    return tuned;
+    if (std::abs(cents(reached.frequency, hz)) < reachedCents && !isWolf(reached))
+        return now;
+    return string::strungToPitch(alone.description, hz, partialCount);
 }
 
 } // namespace hitchpin::board

@@ -33,14 +33,10 @@ inline constexpr double wolfCents = 15.0;
 /// And where the string takes less part than this in its own partial, it is no longer the string that is tuned.
 inline constexpr double leastShare = 0.5;
 
-/// A string brought to pitch on the board by its tension, or, at a wolf, alone.
-struct TunedOnBoard {
-    string::Strung strung;
-    bool wolf = false;
-};
+bool isWolf(const PartialOnBoard& first) noexcept;
 
-/// The same string at the tension at which its first partial sounds at `hz` on the board. Fails where the figures
-/// cannot make a string.
-Result<TunedOnBoard> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt&, int partialCount);
+/// The same string at the tension at which its first partial sounds at `hz` on the board; at a wolf, alone. Fails where
+/// the figures cannot make a string.
+Result<string::Strung> tunedOnBoard(const string::Strung& alone, double hz, const MobilityAt&, int partialCount);
 
 } // namespace hitchpin::board

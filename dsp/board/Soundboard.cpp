@@ -21,6 +21,12 @@ void addWeights(std::vector<double>& weights, const Sharing& place) {
 
 } // namespace
 
+bool movesAcross(const std::vector<Mode>& modes) noexcept {
+    constexpr double leastPart = 1e-9;
+    return std::any_of(modes.begin(), modes.end(),
+                       [](const Mode& mode) { return std::abs(std::cos(mode.angle)) > leastPart; });
+}
+
 Bridge addBridge(std::string name, int boardIndex, Board& board, int points, double resistance) {
     Bridge bridge{std::move(name), boardIndex, static_cast<int>(board.points.size()), points};
     for (int p = 0; p < points; ++p)

@@ -17,6 +17,9 @@ struct Mode {
     double pan = 0.0;          ///< −1…1
 };
 
+/// Whether any of them moves a bridge across: one whose angle is all but a right one does not.
+bool movesAcross(const std::vector<Mode>&) noexcept;
+
 enum class BridgeKind { rigid, resistance, soundboard };
 
 /// Where a bridge may push the board.

@@ -69,10 +69,9 @@ public:
             strings_.push_back({static_cast<int>(i), 1, loop.turn, modelOf(loop), std::move(weights),
                                 string.impedance});
         }
-        for (const board::Mode& mode : from.modes) {
-            movesAcross_ = movesAcross_ || std::abs(std::cos(mode.angle)) > 1e-9;
-            modes_.push_back({modeFilter(mode, design.sampleRate), {}});
-        }
+        movesAcross_ = board::movesAcross(from.modes);
+        for (const board::Mode& mode : from.modes)
+            modes_.push_back({responseOf(modeFilter(mode, design.sampleRate)), {}});
         const Eigen::Index size = movesAcross_ ? 2 * points_ : points_;
         for (std::size_t m = 0; m < modes_.size(); ++m) {
             const board::Mode& mode = from.modes[m];
@@ -92,15 +91,15 @@ public:
     bool movesAcross() const { return movesAcross_; }
     std::size_t modeCount() const { return modes_.size(); }
     Complex modePole(std::size_t m) const {
-        const auto [a, b] = polynomial(modes_[m].filter);
+        const auto [gain, a, b] = modes_[m].response;
         return 2.0 * std::atanh(-0.5 * a + std::sqrt(Complex(0.25 * a * a - b)));
     }
 
-    /// Where a pole of string `i` goes at first order: one shift for each direction.
+    /// Where a pole of a string goes at first order: one shift for each direction.
     std::array<Complex, 2> firstShifts(const Alike& string, Complex p) const {
         const Matrix y = mobility(p, nullptr);
         const double impedance = string.impedance;
-        const Complex byTurn = 2.0 / slopeOf(string, p) * impedance;
+        const Complex byTurn = 2.0 / logLoopSlope(string.loop, std::tanh(0.5 * p)) * impedance;
         const auto here = [&](Eigen::Index row, Eigen::Index column) {
             return string.weights.dot(y.block(row, column, points_, points_).lazyProduct(string.weights).eval());
         };
@@ -131,7 +130,7 @@ public:
             }
         }
         for (const Moving& mode : modes_) {
-            const auto [a, b] = polynomial(mode.filter);
+            const auto [gain, a, b] = mode.response;
             sum += (2.0 * s + a) / (s * s + a * s + b) * 0.5 * (1.0 - s * s);
         }
         // Small: products written out are quicker than blocked ones.
@@ -143,15 +142,9 @@ public:
 
 private:
     struct Moving {
-        ModeFilter filter;
+        ModeResponse response;
         Eigen::VectorXd motion;
     };
-    /// a and b of the mode's denominator s² + a·s + b in s = tanh(p/2).
-    static std::array<double, 2> polynomial(const ModeFilter& filter) {
-        const double b = 0.25 * filter.kappa * filter.kappa;
-        return {0.5 / filter.d - 1.0 - b, b};
-    }
-    static Complex slopeOf(const Alike& string, Complex p) { return logLoopSlope(string.loop, std::tanh(0.5 * p)); }
 
     Matrix mobility(Complex p, Matrix* slope) const {
         Matrix y = remainder_.cast<Complex>().asDiagonal();
@@ -159,9 +152,8 @@ private:
             slope->setZero(y.rows(), y.cols());
         const Complex s = std::tanh(0.5 * p);
         for (const Moving& mode : modes_) {
-            const auto [a, b] = polynomial(mode.filter);
+            const auto [gain, a, b] = mode.response;
             const Complex below = s * s + a * s + b;
-            const double gain = 0.5 * mode.filter.g / mode.filter.d;
             const Eigen::MatrixXd motion = mode.motion * mode.motion.transpose();
             y += gain * s / below * motion;
             if (slope != nullptr)
@@ -252,7 +244,7 @@ void lookForMissing(std::vector<Root>& roots, const Equation& equation, double h
             root.p = root.start = peaks[next++].guess;
 }
 
-/// Below one partial's own pole: its own loop on a rigid bridge.
+/// Poles of a string's loop where the bridge stands still, up to `highest` (rad a sample).
 std::vector<Complex> ownPoles(const Alike& string, const LoopDesign& design, double highest) {
     std::vector<Complex> poles;
     Complex before = 0.0;

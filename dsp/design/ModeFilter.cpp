@@ -1,6 +1,7 @@
 #include "dsp/design/ModeFilter.h"
 
 #include <cmath>
+#include <complex>
 #include <numbers>
 
 namespace hitchpin::design {
@@ -20,10 +21,9 @@ ModeFilter modeFilter(const board::Mode& mode, double sampleRate) {
     return {d, 2.0 * std::sqrt(b), 2.0 * gain * d, 0.5 / (gain * sampleRate)};
 }
 
-Complex admittance(const ModeFilter& filter, Complex p) {
-    const Complex s = std::tanh(0.5 * p);
-    const double b = 0.25 * filter.kappa * filter.kappa, a = 0.5 / filter.d - 1.0 - b, gain = 0.5 * filter.g / filter.d;
-    return gain * s / (s * s + a * s + b);
+ModeResponse responseOf(const ModeFilter& filter) noexcept {
+    const double b = 0.25 * filter.kappa * filter.kappa;
+    return {0.5 * filter.g / filter.d, 0.5 / filter.d - 1.0 - b, b};
 }
 
 } // namespace hitchpin::design

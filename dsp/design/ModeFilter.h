@@ -3,8 +3,6 @@
 
 #include "dsp/board/Soundboard.h"
 
-#include <complex>
-
 namespace hitchpin::design {
 
 /// States u and e, both velocities: of the mode, and its deflection times √(k/m). One step under the force f:
@@ -20,8 +18,11 @@ struct ModeFilter {
 /// The bilinear map bends frequencies; pole e^(s/fs) and the peak Q/(mω) are set exactly, what bends is the skirt.
 ModeFilter modeFilter(const board::Mode&, double sampleRate);
 
-/// Velocity over force at z = e^p.
-std::complex<double> admittance(const ModeFilter&, std::complex<double> p);
+/// Velocity over force, gain·s/(s² + a·s + b) with s = tanh(p/2) at z = e^p.
+struct ModeResponse {
+    double gain, a, b;
+};
+ModeResponse responseOf(const ModeFilter&) noexcept;
 
 /// Modes above this share of the rate are left out: what they would do below it is a mass too small to matter.
 inline constexpr double highestModeShareOfRate = 0.45;

@@ -8,13 +8,6 @@
 
 namespace hitchpin::engine {
 
-namespace {
-
-/// A mode whose angle is this near to one of the directions does not move in the other.
-constexpr double leastPart = 1e-9;
-
-} // namespace
-
 Bridge::Bridge(const design::BoardDesign& design, double sampleRate)
     : points_(static_cast<int>(design.points.size())), heardPerVelocity_(design.heard) {
     if (design.kind == board::BridgeKind::rigid) {
@@ -22,9 +15,7 @@ Bridge::Bridge(const design::BoardDesign& design, double sampleRate)
         return;
     }
     const auto points = static_cast<std::size_t>(points_);
-    const bool movesAcross = std::any_of(design.modes.begin(), design.modes.end(), [](const board::Mode& mode) {
-        return std::abs(std::cos(mode.angle)) > leastPart;
-    });
+    const bool movesAcross = board::movesAcross(design.modes);
     first_[across] = movesAcross ? 0 : -1;
     first_[into] = movesAcross ? points_ : 0;
     size_ = movesAcross ? 2 * points : points;
@@ -72,6 +63,7 @@ void Bridge::clear() noexcept {
 
 void Bridge::takeOver(const Bridge& before) noexcept {
     clear();
+    peak_ = before.peak_;
     if (modes_.size() != before.modes_.size())
         return;
     for (std::size_t m = 0; m < modes_.size(); ++m) {
@@ -176,10 +168,10 @@ void Bridge::run(int count) noexcept {
             state[k] = 0.0;
         }
         for (std::size_t m = 0; m < modes_.size(); ++m) {
-            const ModeState& mode = modes_[m];
-            const double own = mode.filter.d * (2.0 * mode.u - mode.filter.kappa * mode.e);
+            ModeState& mode = modes_[m];
+            mode.own = mode.filter.d * (2.0 * mode.u - mode.filter.kappa * mode.e);
             for (std::size_t k = 0; k < n; ++k)
-                state[k] += motion_[m * n + k] * own;
+                state[k] += motion_[m * n + k] * mode.own;
         }
         for (std::size_t k = 0; k < n; ++k) {
             double sum = 0.0;
@@ -200,8 +192,7 @@ void Bridge::run(int count) noexcept {
             double force = 0.0;
             for (std::size_t k = 0; k < n; ++k)
                 force += motion_[m * n + k] * state[k];
-            const double mean =
-                mode.filter.d * (2.0 * mode.u - mode.filter.kappa * mode.e) + mode.filter.g * force;
+            const double mean = mode.own + mode.filter.g * force;
             mode.u = 2.0 * mean - mode.u;
             mode.e += mode.filter.kappa * mean;
             if (heardByBoard())
@@ -228,12 +219,6 @@ void Bridge::velocity(Direction direction, const board::Sharing& place, double* 
     const double* second = place.ofSecond != 0.0 ? first + longestChunk : first;
     for (int i = 0; i < count; ++i)
         out[i] = place.ofFirst * first[i] + place.ofSecond * second[i];
-}
-
-double Bridge::takePeak() noexcept {
-    const double peak = peak_;
-    peak_ = 0.0;
-    return peak;
 }
 
 } // namespace hitchpin::engine

@@ -50,9 +50,9 @@ public:
     void addDrive(Direction, const board::Sharing&, double twiceImpedance, const double* in, int count) noexcept;
     void run(int count) noexcept;
     void velocity(Direction, const board::Sharing&, double* out, int count) const noexcept;
-    /// Largest speed of any component since the last call.
-    double takePeak() noexcept;
+    /// Largest speed of any component since it was last forgotten.
     double peak() const noexcept { return peak_; }
+    void forgetPeak() noexcept { peak_ = 0.0; }
 
     /// What is heard of a soundboard: its modes and, point by point, its remainder, each with a direction and a place.
     int sources() const noexcept { return static_cast<int>(sources_.size()); }
@@ -70,6 +70,7 @@ private:
     struct ModeState {
         design::ModeFilter filter;
         double u = 0.0, e = 0.0;
+        double own = 0.0; ///< what ū would be without a force, of the sample that is run
     };
     double* row(std::vector<double>& rows, std::size_t i) noexcept { return &rows[i * longestChunk]; }
 

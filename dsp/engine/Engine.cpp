@@ -73,7 +73,6 @@ struct Engine::Running {
         Bridge bridge;
         std::vector<int> strings;
         std::vector<Gains> heardFrom, heardTo; ///< by source
-        double peakVelocity = 0.0;    ///< since the last check
         std::int64_t stillUntil = 0;  ///< after `silence` nothing is woken by it until what rang is out
     };
 
@@ -136,7 +135,7 @@ struct Engine::Running {
 Engine::Running::Running(std::shared_ptr<const design::InstrumentDesign> given)
     : design(std::move(given)), sampleRate(design->sampleRate) {
     for (const auto& board : design->boards)
-        bridges.push_back({Bridge(board, sampleRate), {}, {}, {}, 0.0, 0});
+        bridges.push_back({Bridge(board, sampleRate), {}, {}, {}, 0});
     strings.reserve(design->strings.size());
     for (const auto& from : design->strings) {
         String& string = strings.emplace_back();
@@ -178,7 +177,6 @@ void Engine::Running::reset() noexcept {
     }
     for (Driven& driven : bridges) {
         driven.bridge.clear();
-        driven.peakVelocity = 0.0;
         driven.stillUntil = 0;
     }
     setListening(listening);
@@ -224,7 +222,6 @@ void Engine::Running::takeOver(Running& before) noexcept {
     }
     for (std::size_t b = 0; b < bridges.size(); ++b) {
         bridges[b].bridge.takeOver(before.bridges[b].bridge);
-        bridges[b].peakVelocity = before.bridges[b].peakVelocity;
         bridges[b].stillUntil = before.bridges[b].stillUntil;
         // Same size: no allocation.
         if (bridges[b].heardTo.size() == before.bridges[b].heardTo.size()) {
@@ -378,7 +375,6 @@ void Engine::Running::runBridge(Driven& driven, double* leftOut, double* rightOu
             wave += longestChunk;
         }
         bridge.run(step);
-        driven.peakVelocity = std::max(driven.peakVelocity, bridge.takePeak());
         for (int i = 0; i < bridge.sources(); ++i)
             hear(driven.heardFrom[static_cast<std::size_t>(i)], driven.heardTo[static_cast<std::size_t>(i)],
                  bridge.heard(i), leftOut, rightOut, offset, step);
@@ -459,11 +455,9 @@ void Engine::Running::hear(const Gains& from, const Gains& to, const double* hea
 }
 
 void Engine::Running::restWhatIsOver() noexcept {
-    for (Driven& driven : bridges) {
-        if (driven.peakVelocity >= restVelocity && clock >= driven.stillUntil)
+    for (Driven& driven : bridges)
+        if (driven.bridge.peak() >= restVelocity && clock >= driven.stillUntil)
             wake(driven);
-        driven.bridge.rest(restEnergy);
-    }
     for (String& string : strings)
         for (Slot& slot : string.slots)
             for (const Direction direction : {across, into}) {
@@ -477,12 +471,14 @@ void Engine::Running::restWhatIsOver() noexcept {
                 if (rail.releases.pending())
                     continue;
                 const bool fed = movesWith(string, direction) && string.damperT60 <= 0.0 &&
-                                 bridges[static_cast<std::size_t>(string.bridge)].peakVelocity >= restVelocity;
+                                 bridges[static_cast<std::size_t>(string.bridge)].bridge.peak() >= restVelocity;
                 if (!fed && energyOf(string, rail) < restEnergy)
                     rail.clear();
             }
-    for (Driven& driven : bridges)
-        driven.peakVelocity = 0.0;
+    for (Driven& driven : bridges) {
+        driven.bridge.rest(restEnergy);
+        driven.bridge.forgetPeak();
+    }
     const auto stillTakesOver = [](const String& string) {
         return std::any_of(string.slots.begin(), string.slots.end(), [](const Slot& slot) {
             return slot.rails[across].takingOver() || slot.rails[into].takingOver();
@@ -571,7 +567,7 @@ void Engine::damp(int index, double t60) noexcept {
     }
     if (string->damperT60 <= 0.0 && string->bridge >= 0) {
         Running::Driven& driven = r.bridges[static_cast<std::size_t>(string->bridge)];
-        if (driven.peakVelocity >= restVelocity && r.clock >= driven.stillUntil)
+        if (driven.bridge.peak() >= restVelocity && r.clock >= driven.stillUntil)
             r.wake(driven);
     }
 }

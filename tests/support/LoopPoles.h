@@ -2,6 +2,7 @@
 #pragma once
 
 #include "dsp/engine/Rail.h"
+#include "tests/support/Response.h"
 
 #include <algorithm>
 #include <cmath>
@@ -9,9 +10,6 @@
 #include <numbers>
 
 namespace hitchpin::support {
-
-using Long = long double;
-using LongComplex = std::complex<Long>;
 
 /// d + c·(z − A)⁻¹·b of two states.
 inline LongComplex transferOfTwoStates(LongComplex z, Long a11, Long a12, Long a21, Long a22, Long b1, Long b2, Long c1,
@@ -55,19 +53,10 @@ public:
     struct Pole {
         double frequency, decayRate; ///< Hz, 1/s
     };
-    /// Newton on ln L(e^p) = 0, the derivative by differences. Taking the nearest branch of the logarithm, it finds a
-    /// pole within half a partial of the start, and no other.
     Pole poleNear(double frequency, double decayRate) const {
-        const Long rate = static_cast<Long>(sampleRate_), turn = 2 * std::numbers::pi_v<Long>, h = 1e-6L;
-        LongComplex p(-static_cast<Long>(decayRate) / rate, turn * static_cast<Long>(frequency) / rate);
-        for (int i = 0; i < 30; ++i) {
-            const LongComplex here = at(p), slope = std::log(at(p + h) / here) / h;
-            const LongComplex step = std::log(here) / slope;
-            p -= step;
-            if (std::abs(step) < 1e-13L)
-                break;
-        }
-        return {static_cast<double>(p.imag() * rate / turn), static_cast<double>(-p.real() * rate)};
+        const LoopPole pole = support::poleNear([this](LongComplex p) { return at(p); }, sampleRate_, frequency, decayRate);
+        const Long rate = static_cast<Long>(sampleRate_), turn = 2 * std::numbers::pi_v<Long>;
+        return {static_cast<double>(pole.p.imag() * rate / turn), static_cast<double>(-pole.p.real() * rate)};
     }
 
     /// Largest |L| on the unit circle, over as many points evenly in frequency and evenly in its logarithm.

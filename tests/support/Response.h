@@ -59,18 +59,23 @@ struct LoopPole {
 
 /// Newton on ln L(e^p) = 0, the derivative by differences. Taking the nearest branch of the logarithm, it finds a
 /// pole that is within half a partial of where it starts, and no other.
-inline LoopPole poleNear(const design::LoopDesign& loop, double frequency, double decayRate) {
-    const Long rate = static_cast<Long>(loop.sampleRate);
+/// `loopAt(p)` is L(e^p).
+template <class LoopAt>
+LoopPole poleNear(const LoopAt& loopAt, double sampleRate, double frequency, double decayRate) {
+    const Long rate = static_cast<Long>(sampleRate);
     LoopPole pole{{-decayRate / rate, 2 * std::numbers::pi_v<Long> * frequency / rate}, 1};
     for (int i = 0; i < 30; ++i) {
         const Long h = 1e-7L;
-        pole.delay = -std::log(responseOf(loop, std::exp(pole.p + h)) / responseOf(loop, std::exp(pole.p - h))) / (2 * h);
-        const LongComplex step = -std::log(responseOf(loop, std::exp(pole.p))) / pole.delay;
+        pole.delay = -std::log(loopAt(pole.p + h) / loopAt(pole.p - h)) / (2 * h);
+        const LongComplex step = -std::log(loopAt(pole.p)) / pole.delay;
         pole.p -= step;
         if (std::abs(step) < 1e-15L)
             break;
     }
     return pole;
+}
+inline LoopPole poleNear(const design::LoopDesign& loop, double frequency, double decayRate) {
+    return poleNear([&](LongComplex p) { return responseOf(loop, std::exp(p)); }, loop.sampleRate, frequency, decayRate);
 }
 
 } // namespace hitchpin::support
