@@ -29,13 +29,13 @@ const std::array<Column, warningsColumn> columns{{
     {"Pitch Hz", 58, [](const report::ScheduleRow& r) { return juce::String(r.pitchHz, r.pitchHz < 1000 ? 2 : 1); }},
     {"Strings", 46, [](const report::ScheduleRow& r) { return juce::String(r.strings); }},
     {"Length mm", 54, [](const report::ScheduleRow& r) { return juce::String(r.speakingLengthMm, 1); }},
-    {" Core", 124, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
-    {" Windings", 150, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
+    {" Core", 120, [](const report::ScheduleRow& r) { return fromUtf8(r.core); }},
+    {" Windings", 146, [](const report::ScheduleRow& r) { return fromUtf8(r.windings); }},
     {"Tension N", 52, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.tensionN)); }},
     {"Share of breaking", 56, [](const report::ScheduleRow& r) { return juce::String(r.breakingShare, 2); }},
-    {"Semitones to breaking", 62, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
-    {"Rings on board s", 54, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.boardT60S.front())); }},
-    {"Rings alone s", 50, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.decayT60S.front())); }},
+    {"Semitones left", 72, [](const report::ScheduleRow& r) { return juce::String(r.semitonesToBreaking, 1); }},
+    {"Ring s on board", 56, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.boardT60S.front())); }},
+    {"Ring s alone", 48, [](const report::ScheduleRow& r) { return fromUtf8(report::threeDigits(r.decayT60S.front())); }},
     {" Warnings", 110, wordsOf},
 }};
 
